@@ -1,0 +1,1 @@
+"""What a desk is told of its stories."""

@@ -1,0 +1,1 @@
+"""The engine and the service around it."""

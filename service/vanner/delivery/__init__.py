@@ -1,0 +1,1 @@
+"""Hands messages over."""

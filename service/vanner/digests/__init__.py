@@ -1,0 +1,1 @@
+"""What a desk is sent by cron."""

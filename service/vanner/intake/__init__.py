@@ -1,0 +1,1 @@
+"""Turns what a source gave into an item that may be accepted."""

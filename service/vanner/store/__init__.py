@@ -1,0 +1,1 @@
+"""The database: the only stage that speaks SQL."""

@@ -1,0 +1,1 @@
+"""Cuts text into terms."""
