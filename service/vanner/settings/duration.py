@@ -18,7 +18,8 @@ def parse_duration(value: object) -> float:
         ValueError: It is neither, or it is not above zero.
     """
     if isinstance(value, bool):
-        raise ValueError('a duration such as "60s", "15m", "6h" or "28d"')
+        # Pydantic turns a ValueError into a fault; a TypeError would escape it.
+        raise ValueError('a duration such as "60s", "15m", "6h" or "28d"')  # noqa: TRY004 - see above
     if isinstance(value, int | float):
         seconds = float(value)
     else:
