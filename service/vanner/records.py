@@ -25,6 +25,7 @@ class RawItem:
         published_s: That date in Unix seconds, or None where it could not be read.
         charset: The charset that was declared for bytes, or None.
         title_is_html: Whether `title` holds HTML (entities, tags) still to be taken out.
+        source: The source that an archive line names, or None for the polled source's own.
     """
 
     guid: str | None
@@ -37,6 +38,7 @@ class RawItem:
     published_s: float | None = None
     charset: str | None = None
     title_is_html: bool = False
+    source: str | None = None
 
 
 @dataclass(frozen=True, slots=True)
