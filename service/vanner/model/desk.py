@@ -14,7 +14,7 @@ from zoneinfo import ZoneInfo
 
 import numpy as np
 
-from vanner.model.background import UNSEEN_WORDS, Background
+from vanner.model.background import Background
 from vanner.model.budget import NOTED_FRACTION, Budget
 from vanner.model.decay import Ints
 from vanner.model.read_batch import ItemRead, read_items
@@ -135,9 +135,7 @@ class DeskModel:
         cleared = self.book.clear_due(now_s, self._due())
         warm = self.is_warm(now_s)
         reads = read_items(self, items, now_s)
-        fresh = [
-            read for item, read in zip(items, reads, strict=True) if item.revision == 1
-        ]
+        fresh = [read for item, read in zip(items, reads, strict=True) if item.revision == 1]
         self._fold_in(fresh, now_s)
         arrivals = self._admit(fresh, now_s)
         changed = self._judge(arrivals, now_s) if warm else []
@@ -155,8 +153,7 @@ class DeskModel:
     def _due(self) -> dict[int, float]:
         pulse_s = self.parameters.pulse_s
         return {
-            number: math.ceil((story.last_activity_s + self.book.clear_after_s) / pulse_s)
-            * pulse_s
+            number: math.ceil((story.last_activity_s + self.book.clear_after_s) / pulse_s) * pulse_s
             for number, story in self.book.live.items()
         }
 

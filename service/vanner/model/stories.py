@@ -215,9 +215,7 @@ class StoryBook:
                 changed[number] = story
                 return None
         free = tuple(i for i, owner in zip(candidate.items, owners, strict=True) if owner is None)
-        return Candidate(
-            candidate.term, candidate.bits, candidate.seen, candidate.expected, free
-        )
+        return Candidate(candidate.term, candidate.bits, candidate.seen, candidate.expected, free)
 
     def _begin(
         self,

@@ -68,9 +68,7 @@ class Windows:
     first: list[int] = field(default_factory=lambda: [0] * len(SPANS_S))
     counts: Floats = field(default_factory=lambda: np.zeros((len(SPANS_S), 0)))
     histories: tuple[DecayedCounts, ...] = field(
-        default_factory=lambda: tuple(
-            DecayedCounts(Decay(HISTORY_HALF_LIFE_S)) for _ in SPANS_S
-        )
+        default_factory=lambda: tuple(DecayedCounts(Decay(HISTORY_HALF_LIFE_S)) for _ in SPANS_S)
     )
     seasons: DecayedCounts = field(
         default_factory=lambda: DecayedCounts(
@@ -123,7 +121,7 @@ class Windows:
         self.seasons.advance(now_s)
         times = np.array([item.published_s for item in items])
         for item, weight in zip(items, self.seasons.decay.stored_weight(times), strict=True):
-            cells = [item.season[0], BANDS + item.season[1]]
+            cells = np.array([item.season[0], BANDS + item.season[1]])
             if item.terms.size:
                 self.seasons.reserve(int(item.terms.max()) + 1)
                 self.seasons.stored[np.ix_(item.terms, cells)] += weight
@@ -185,9 +183,7 @@ class Windows:
             now_s: Unix seconds.
         """
         rows = [self._test_span(span, terms, season, now_s) for span in range(len(SPANS_S))]
-        bits, seen, expected, shape = (
-            np.stack(part) for part in zip(*rows, strict=True)
-        )
+        bits, seen, expected, shape = (np.stack(part) for part in zip(*rows, strict=True))
         best: Ints = np.argmax(bits, axis=0)
         pick = (best, np.arange(terms.size))
         return Tests(terms, bits[pick], seen[pick], expected[pick], shape[pick], best)
@@ -214,6 +210,4 @@ class Windows:
         if span == len(SPANS_S) - 1:
             return rates  # a whole day holds every hour band
         band = season[0]
-        return np.maximum(
-            rates, season_rate(rate, mentions[:, band], items[band], SEASON_STRENGTH)
-        )
+        return np.maximum(rates, season_rate(rate, mentions[:, band], items[band], SEASON_STRENGTH))

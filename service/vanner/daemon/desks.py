@@ -1,0 +1,96 @@
+"""A desk in service: its plan, its model, and how items become terms for it."""
+
+from __future__ import annotations
+
+import hashlib
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+
+from vanner.daemon.plan import DeskPlan, pack_plan, unpack_plan
+from vanner.errors import DatabaseError
+from vanner.model.desk import DeskModel, TermItem
+from vanner.model.state import STATE_VERSION, StateVersionError, pack, retune, unpack
+from vanner.records import StoredItem
+from vanner.store.checkpoints import Checkpoint
+from vanner.store.database import Database
+from vanner.store.pulses import pulses_between
+from vanner.terms import count_terms
+
+
+@dataclass(slots=True)
+class Desk:
+    """A plan and the model that follows it."""
+
+    plan: DeskPlan
+    model: DeskModel
+
+    def checkpoint(self, at_s: float) -> Checkpoint:
+        """The model's state after the pulse that ended at `at_s`."""
+        return Checkpoint(at_s, pack_plan(self.plan), STATE_VERSION, pack(self.model))
+
+
+def term_items(items: Sequence[StoredItem]) -> list[TermItem]:
+    """Items as counted terms, in their order."""
+    return [_term_item(item) for item in items]
+
+
+def _term_item(item: StoredItem) -> TermItem:
+    terms = count_terms(item.title, item.content_text)
+    return TermItem(
+        item_id=item.item_id,
+        revision=item.revision,
+        published_s=item.published_s,
+        received_s=item.received_s,
+        teaches=item.teaches,
+        terms=terms,
+        copy_key=_copy_key(item.item_id, terms),
+    )
+
+
+def _copy_key(item_id: int, terms: Mapping[str, int]) -> str:
+    """Equal for items with the same words in the same numbers; an empty item is no copy."""
+    if not terms:
+        return f"empty {item_id}"
+    text = "\n".join(f"{term} {number}" for term, number in sorted(terms.items()))
+    return hashlib.blake2b(text.encode("utf-8", "surrogatepass"), digest_size=16).hexdigest()
+
+
+def new_desk(plan: DeskPlan) -> Desk:
+    """A desk that has read nothing."""
+    return Desk(plan, DeskModel(plan.parameters))
+
+
+def restored_desk(database: Database, plan: DeskPlan, saved: Checkpoint, read_s: float) -> Desk:
+    """A desk as it stood after the pulse that ended at `read_s`.
+
+    The pulses after the checkpoint are derived again, under the plan of that time and without
+    writing anything: their results are committed already. Only then does today's plan hold.
+
+    Raises:
+        DatabaseError: The state is of another version's format.
+    """
+    earlier = unpack_plan(saved.parameters)
+    try:
+        model = unpack(saved.state, earlier.parameters)
+    except StateVersionError as error:
+        raise DatabaseError(
+            f"The database {database.path} holds {error}; run `vanner rebuild` to derive it again."
+        ) from error
+    pulse_s = earlier.parameters.pulse_s
+    for end_s, items in pulses_between(database, saved.at_s, read_s, pulse_s):
+        clear_until(model, end_s, inclusive=False)
+        mine = [item for item in items if earlier.reads(item.source)]
+        if mine:
+            model.step(end_s, term_items(mine))
+    clear_until(model, read_s, inclusive=True)
+    if earlier.parameters != plan.parameters:
+        retune(model, plan.parameters, read_s)
+    return Desk(plan, model)
+
+
+def clear_until(model: DeskModel, limit_s: float, *, inclusive: bool) -> None:
+    """Take the steps of empty pulses in which stories clear, before (or up to) a time."""
+    while (due_s := model.next_clearing_s()) is not None:
+        if due_s > limit_s or (due_s == limit_s and not inclusive):
+            return
+        model.step(due_s, [])

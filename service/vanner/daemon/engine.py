@@ -1,0 +1,268 @@
+"""The engine: takes a database from pulse to pulse.
+
+Daemon, replay and rebuild all run it. What it writes is a function of the items and of the
+order in which they were received; when it is called and how often does not matter.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterator, Sequence
+from contextlib import closing
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+import structlog
+
+from vanner.alerts.mail import compose_alert
+from vanner.clock import pulse_end_s, pulse_of
+from vanner.daemon.desks import Desk, new_desk, restored_desk, term_items
+from vanner.daemon.digesting import DigestBook, make_digest
+from vanner.daemon.plan import DeskPlan, pack_plan
+from vanner.store.checkpoints import begin_desk, checkpoint_of, keep_checkpoint
+from vanner.store.outbox import queue
+from vanner.store.pulses import (
+    ClockState,
+    clock_state,
+    close_until,
+    keep_readings,
+    keep_stories,
+    mark_read,
+    pulses_between,
+    start_clock,
+)
+from vanner.store.stories import story_line
+
+if TYPE_CHECKING:
+    from vanner.digests.schedule import Slot
+    from vanner.model.desk import PulseResult
+    from vanner.records import StoredItem, StoryLine
+    from vanner.store.database import Connection, Database
+
+log = structlog.get_logger()
+
+# A restart derives at most this much again.
+CHECKPOINT_ITEMS = 20_000
+CHECKPOINT_PULSES = 60
+
+
+@dataclass(frozen=True, slots=True)
+class PulseEvent:
+    """A pulse with items, or (with none) one in which a story of some desk clears."""
+
+    end_s: float
+    items: tuple[StoredItem, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class DigestEvent:
+    """A digest that is due."""
+
+    plan: DeskPlan
+    schedule: str
+    slot: Slot
+
+
+@dataclass(frozen=True, slots=True)
+class Progress:
+    """What a caller may show after a pulse."""
+
+    end_s: float
+    items: int
+    raised: tuple[StoryLine, ...]
+
+
+class Engine:
+    """Runs desks over a database. Use from one thread at a time."""
+
+    def __init__(
+        self,
+        database: Database,
+        plans: Sequence[DeskPlan],
+        pulse_s: float,
+        *,
+        purpose: str = "service",
+        withhold_mail: bool = False,
+        pulses_per_commit: int = 1,
+    ) -> None:
+        self.database = database
+        self.plans = tuple(plans)
+        self.pulse_s = pulse_s
+        self.purpose = purpose
+        self.withhold_mail = withhold_mail
+        self.pulses_per_commit = pulses_per_commit
+        self.desks: tuple[Desk, ...] = ()
+        self.read_s = 0.0
+        self._digests = DigestBook(())
+        self._pulses_since = self._items_since = 0
+        self._stale = True
+
+    def begin(self, start_s: float) -> None:
+        """Load the desks, deriving again what their checkpoints do not hold yet.
+
+        Args:
+            start_s: Where the clock of a new database begins; floored to a pulse.
+
+        Raises:
+            DatabaseError: The database refused, or holds a state that cannot be read.
+        """
+        begin_s = pulse_of(start_s, self.pulse_s) * self.pulse_s
+        with self.database.write() as connection:
+            state = clock_state(connection) or ClockState(
+                self.pulse_s, begin_s, begin_s, self.purpose
+            )
+            start_clock(
+                connection, ClockState(self.pulse_s, state.closed_s, state.read_s, self.purpose)
+            )
+            for plan in self.plans:
+                begin_desk(connection, plan.desk, state.read_s)
+        self.read_s = state.read_s
+        self.desks = tuple(self._load(plan) for plan in self.plans)
+        self._digests = DigestBook(self.plans, self.read_s)
+        self._pulses_since = self._items_since = 0
+        self._stale = False
+
+    def _load(self, plan: DeskPlan) -> Desk:
+        with self.database.read() as connection:
+            saved = checkpoint_of(connection, plan.desk)
+        if saved is not None:
+            desk = restored_desk(self.database, plan, saved, self.read_s)
+            if saved.parameters == pack_plan(plan):
+                return desk
+        else:
+            desk = new_desk(plan)
+        # From here on the desk follows this plan: a crash must not bring the old one back.
+        with self.database.write() as connection:
+            keep_checkpoint(connection, plan.desk, desk.checkpoint(self.read_s))
+        return desk
+
+    def advance(self, until_s: float, on_pulse: Callable[[Progress], None] | None = None) -> None:
+        """Close every pulse that ends by `until_s` and commit what it concludes.
+
+        Args:
+            until_s: Unix seconds; floored to the end of a whole pulse.
+            on_pulse: Called after each pulse that held items.
+
+        Raises:
+            DatabaseError: The database refused. What was committed stands; the next call
+                begins from there.
+        """
+        if self._stale:
+            self.begin(until_s)
+        end_s = pulse_of(until_s, self.pulse_s) * self.pulse_s
+        if end_s <= self.read_s:
+            return
+        try:
+            with self.database.write() as connection:
+                close_until(connection, end_s)
+            self._run(end_s, on_pulse)
+        except BaseException:
+            # The models may be ahead of what was committed: load them anew before going on.
+            self._stale = True
+            raise
+        self.read_s = end_s
+
+    def _run(self, end_s: float, on_pulse: Callable[[Progress], None] | None) -> None:
+        more = True
+        with closing(self._events(end_s)) as events:
+            while more:
+                shown = []
+                with self.database.write() as connection:
+                    for _ in range(self.pulses_per_commit):
+                        event = next(events, None)
+                        if event is None:
+                            more = False
+                            mark_read(connection, end_s)
+                            break
+                        shown.append(self._handle(connection, event))
+                for progress in shown:
+                    if progress is not None and on_pulse is not None:
+                        on_pulse(progress)
+
+    def _events(self, until_s: float) -> Iterator[PulseEvent | DigestEvent]:
+        """Events in order of time; at equal times pulses, then clearings, then digests."""
+        for end_s, items in pulses_between(self.database, self.read_s, until_s, self.pulse_s):
+            yield from self._quiet_events(end_s, inclusive=False)
+            yield PulseEvent(end_s, tuple(items))
+        yield from self._quiet_events(until_s, inclusive=True)
+
+    def _quiet_events(
+        self, limit_s: float, *, inclusive: bool
+    ) -> Iterator[PulseEvent | DigestEvent]:
+        """Clearings and digests before (or up to) a time; each is handled before the next."""
+        while True:
+            due = [desk.model.next_clearing_s() for desk in self.desks]
+            clears_s = min((time for time in due if time is not None), default=float("inf"))
+            digest = self._digests.next(limit_s)
+            slot_s = digest[2].scheduled_s if digest is not None else float("inf")
+            first_s = min(clears_s, slot_s)
+            if first_s > limit_s or (first_s == limit_s and not inclusive):
+                return
+            if clears_s <= slot_s or digest is None:
+                yield PulseEvent(clears_s, ())
+            else:
+                self._digests.done(digest)
+                yield DigestEvent(*digest)
+
+    def _handle(self, connection: Connection, event: PulseEvent | DigestEvent) -> Progress | None:
+        if isinstance(event, DigestEvent):
+            make_digest(
+                connection, event.plan, event.schedule, event.slot, withheld=self.withhold_mail
+            )
+            return None
+        raised = self._pulse(connection, event)
+        mark_read(connection, event.end_s)
+        self._pulses_since += 1
+        self._items_since += len(event.items)
+        if self._pulses_since >= CHECKPOINT_PULSES or self._items_since >= CHECKPOINT_ITEMS:
+            self._keep_states(connection, event.end_s)
+        return Progress(event.end_s, len(event.items), raised)
+
+    def _pulse(self, connection: Connection, event: PulseEvent) -> tuple[StoryLine, ...]:
+        counted = list(zip(event.items, term_items(event.items), strict=True))
+        raised: list[StoryLine] = []
+        for desk in self.desks:
+            mine = [terms for item, terms in counted if desk.plan.reads(item.source)]
+            due_s = desk.model.next_clearing_s()
+            if mine or (due_s is not None and due_s <= event.end_s):
+                result = desk.model.step(event.end_s, mine)
+                raised += self._keep(connection, desk.plan, result, event.end_s)
+        return tuple(raised)
+
+    def _keep(
+        self, connection: Connection, plan: DeskPlan, result: PulseResult, end_s: float
+    ) -> list[StoryLine]:
+        keep_readings(connection, plan.desk, result.readings)
+        ids = keep_stories(connection, result.stories)
+        raised = [
+            story_line(connection, ids[story.number])
+            for story in result.stories
+            if story.raised_s == end_s
+        ]
+        for line in raised:
+            log.info(
+                "alert_raised", desk=plan.desk, alert_id=line.story_id, bits=round(line.bits, 1)
+            )
+            if plan.mails_alerts and plan.recipients:
+                mail = compose_alert(line, plan.zone, plan.recipients, end_s)
+                queue(connection, mail, withheld=self.withhold_mail)
+        return raised
+
+    def _keep_states(self, connection: Connection, at_s: float) -> None:
+        for desk in self.desks:
+            keep_checkpoint(connection, desk.plan.desk, desk.checkpoint(at_s))
+        self._pulses_since = self._items_since = 0
+
+    def save(self) -> None:
+        """Save the models' states, so that the next start derives nothing again.
+
+        Raises:
+            DatabaseError: The database refused.
+        """
+        if self._stale or not self._pulses_since:
+            return
+        with self.database.write() as connection:
+            self._keep_states(connection, self.read_s)
+
+    def next_end_s(self, now_s: float) -> float:
+        """When the pulse that holds `now_s` closes."""
+        return pulse_end_s(pulse_of(now_s, self.pulse_s), self.pulse_s)

@@ -1,0 +1,155 @@
+"""The running service: sources polled, pulses closed, mail sent, each on its own job.
+
+Jobs are APScheduler's; each turn of a job sets the time of its next one, so that a changed
+clock or a slow turn moves the schedule and never piles turns up. A job that fails is logged
+and comes again: a source never stops another.
+"""
+
+from __future__ import annotations
+
+import random
+import threading
+from collections.abc import Callable, Sequence
+from contextlib import suppress
+from datetime import UTC, datetime
+
+import structlog
+from apscheduler.executors.pool import ThreadPoolExecutor
+from apscheduler.jobstores.base import ConflictingIdError
+from apscheduler.schedulers import SchedulerNotRunningError
+from apscheduler.schedulers.background import BackgroundScheduler
+
+from vanner.daemon.engine import Engine, Progress
+from vanner.daemon.polling import Poller
+from vanner.daemon.posting import Postman
+from vanner.errors import VannerError
+from vanner.records import Source
+from vanner.store.database import Database
+from vanner.store.source_states import register
+
+log = structlog.get_logger()
+
+_AFTER_CLOSE_S = 0.02  # so that the job never runs a hair before the pulse has ended
+_RETRY_S = 5.0  # after a database that refused
+_STOP_WAIT_S = 8.0
+
+
+class Service:
+    """Polls sources and runs an engine until told to stop."""
+
+    def __init__(
+        self,
+        database: Database,
+        engine: Engine,
+        postman: Postman,
+        sources: Sequence[tuple[Source, str, float]],
+        rng: random.Random,
+        clock: Callable[[], float],
+        on_pulse: Callable[[Progress], None] | None = None,
+    ) -> None:
+        self._database = database
+        self._engine = engine
+        self._postman = postman
+        self._clock = clock
+        self._on_pulse = on_pulse
+        self._sources = [source for source, _, _ in sources]
+        self._kinds = [(source.name, kind) for source, kind, _ in sources]
+        self._pollers = [
+            Poller(database, source, kind, every_s, random.Random(rng.random()), clock)  # noqa: S311 - jitter, not secrecy
+            for source, kind, every_s in sources
+        ]
+        self._stopping = threading.Event()
+        self._working = threading.Lock()
+        threads = ThreadPoolExecutor(max_workers=min(32, len(self._pollers) + 2))
+        self._scheduler = BackgroundScheduler(
+            executors={"default": threads},
+            job_defaults={"misfire_grace_time": None, "coalesce": True, "max_instances": 1},
+            timezone=UTC,
+        )
+
+    def start(self) -> None:
+        """Load the desks and start the jobs.
+
+        Raises:
+            DatabaseError: The database refused.
+        """
+        self._postman.settle()
+        with self._database.write() as connection:
+            register(connection, self._kinds)
+        now_s = self._clock()
+        self._engine.begin(now_s)
+        # What waited while no daemon ran is read at once, before anything new is polled.
+        self._engine.advance(now_s, self._on_pulse)
+        self._scheduler.start()
+        self._at(self._engine.next_end_s(now_s) + _AFTER_CLOSE_S, "pulse", self._pulse)
+        self._at(now_s, "post", self._post)
+        for poller in self._pollers:
+            self._at(now_s, f"poll {poller.source.name}", lambda p=poller: self._poll(p))
+        log.info("service_started", sources=len(self._pollers), desks=len(self._engine.plans))
+
+    def _at(self, time_s: float, name: str, work: Callable[[], None]) -> None:
+        if self._stopping.is_set():
+            return
+        # The scheduler has ended between the check and the call: then nothing is to be done.
+        with suppress(SchedulerNotRunningError, ConflictingIdError):
+            self._scheduler.add_job(
+                work,
+                "date",
+                run_date=datetime.fromtimestamp(time_s, UTC),
+                id=name,
+                replace_existing=True,
+            )
+
+    def _pulse(self) -> None:
+        now_s = self._clock()
+        next_s = self._engine.next_end_s(now_s) + _AFTER_CLOSE_S
+        try:
+            with self._working:
+                if not self._stopping.is_set():
+                    self._engine.advance(now_s, self._on_pulse)
+        except VannerError as error:
+            log.error("pulse_failed", reason=str(error))  # noqa: TRY400 - users get a sentence
+            next_s = self._clock() + _RETRY_S
+        except Exception:
+            log.exception("pulse_failed")
+            next_s = self._clock() + _RETRY_S
+        finally:
+            self._at(next_s, "pulse", self._pulse)
+            self._at(self._clock(), "post", self._post)
+
+    def _post(self) -> None:
+        try:
+            self._postman.round()
+        except VannerError as error:
+            log.error("post_failed", reason=str(error))  # noqa: TRY400 - users get a sentence
+        except Exception:
+            log.exception("post_failed")
+
+    def _poll(self, poller: Poller) -> None:
+        next_s: float | None = self._clock() + max(poller.every_s, _RETRY_S)
+        try:
+            next_s = poller.turn().next_s
+        except VannerError as error:
+            log.error("poll_failed", source=poller.source.name, reason=str(error))  # noqa: TRY400 - users get a sentence
+        except Exception:
+            log.exception("poll_failed", source=poller.source.name)
+        finally:
+            if next_s is None:
+                log.warning("source_stopped", source=poller.source.name)
+            else:
+                name = f"poll {poller.source.name}"
+                self._at(next_s, name, lambda: self._poll(poller))
+
+    def stop(self) -> None:
+        """Finish the pulse that is being committed, save the models' state, end the jobs."""
+        self._stopping.set()
+        if self._scheduler.running:
+            self._scheduler.shutdown(wait=False)
+        if self._working.acquire(timeout=_STOP_WAIT_S):
+            try:
+                self._engine.save()
+            except VannerError as error:
+                log.error("save_failed", reason=str(error))  # noqa: TRY400 - users get a sentence
+            finally:
+                self._working.release()
+        log.info("service_stopped")

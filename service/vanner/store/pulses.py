@@ -1,0 +1,225 @@
+"""The clock of pulses: which items wait, and committing what a pulse concluded."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass
+from itertools import groupby
+
+from sqlalchemy import Connection, delete, insert, select, update
+from sqlalchemy.dialects.sqlite import insert as upsert
+
+from vanner.clock import pulse_end_s, pulse_of
+from vanner.records import Reading, StoredItem, StoryRecord
+from vanner.store.database import Database
+from vanner.store.schema import (
+    clock,
+    item,
+    item_revision,
+    reading,
+    story,
+    story_item,
+    story_term,
+    topic,
+)
+
+_ROWS_A_FETCH = 2000
+
+
+@dataclass(frozen=True, slots=True)
+class ClockState:
+    """Where a database's pulses stand; see `schema.clock`."""
+
+    pulse_s: float
+    closed_s: float
+    read_s: float
+    purpose: str
+
+
+def clock_state(connection: Connection) -> ClockState | None:
+    """The clock's row, or None in a database that nothing has begun to serve."""
+    row = connection.execute(select(clock)).one_or_none()
+    return None if row is None else ClockState(row.pulse_s, row.closed_s, row.read_s, row.purpose)
+
+
+def start_clock(connection: Connection, state: ClockState) -> None:
+    """Write the clock's only row."""
+    connection.execute(
+        upsert(clock)
+        .values(
+            clock_id=1,
+            pulse_s=state.pulse_s,
+            closed_s=state.closed_s,
+            read_s=state.read_s,
+            purpose=state.purpose,
+        )
+        .on_conflict_do_update(
+            index_elements=["clock_id"],
+            set_={
+                "pulse_s": state.pulse_s,
+                "closed_s": state.closed_s,
+                "read_s": state.read_s,
+                "purpose": state.purpose,
+            },
+        )
+    )
+
+
+def close_until(connection: Connection, until_s: float) -> None:
+    """Let no more items into the pulses that end by `until_s`."""
+    connection.execute(update(clock).where(clock.c.closed_s < until_s).values(closed_s=until_s))
+
+
+def mark_read(connection: Connection, until_s: float) -> None:
+    """Note, in the transaction of their results, that pulses up to a time are read."""
+    connection.execute(update(clock).where(clock.c.read_s < until_s).values(read_s=until_s))
+
+
+def pulses_between(
+    database: Database, from_s: float, until_s: float, pulse_s: float
+) -> Iterator[tuple[float, list[StoredItem]]]:
+    """Pulses that hold items received in [from_s, until_s), each with its end, in order.
+
+    Items of a pulse come in the order of their receipt and number. Rows are fetched a few
+    thousand at a time, so that a long archive does not have to fit in memory.
+    """
+    position = from_s
+    while True:
+        rows = _fetch(database, position, until_s, _ROWS_A_FETCH)
+        if not rows:
+            return
+        whole = len(rows) < _ROWS_A_FETCH
+        last = pulse_of(rows[-1].received_s, pulse_s)
+        if not whole:
+            kept = [one for one in rows if pulse_of(one.received_s, pulse_s) < last]
+            if kept:
+                rows = kept
+            else:  # one pulse holds more rows than a fetch: take all of it
+                rows = _fetch(database, position, min(until_s, pulse_end_s(last, pulse_s)), None)
+        for number, members in groupby(rows, lambda one: pulse_of(one.received_s, pulse_s)):
+            yield pulse_end_s(number, pulse_s), list(members)
+        position = pulse_end_s(pulse_of(rows[-1].received_s, pulse_s), pulse_s)
+
+
+def _fetch(
+    database: Database, from_s: float, until_s: float, limit: int | None
+) -> list[StoredItem]:
+    query = (
+        select(
+            item_revision.c.item_id,
+            item_revision.c.revision,
+            item.c.source,
+            item.c.guid,
+            item_revision.c.title,
+            item_revision.c.content_text,
+            item_revision.c.language,
+            item_revision.c.published_s,
+            item_revision.c.received_s,
+            item_revision.c.teaches,
+        )
+        .join(item, item.c.item_id == item_revision.c.item_id)
+        .where(item_revision.c.received_s >= from_s, item_revision.c.received_s < until_s)
+        .order_by(item_revision.c.received_s, item_revision.c.item_id, item_revision.c.revision)
+        .limit(limit)
+    )
+    with database.read() as connection:
+        return [StoredItem(**row) for row in connection.execute(query).mappings()]
+
+
+def keep_readings(connection: Connection, desk: str, readings: Sequence[Reading]) -> None:
+    """Write readings and topics; a later revision's reading takes the earlier one's place."""
+    if not readings:
+        return
+    rows = {one.item_id: one for one in readings}  # the last of an item's revisions stands
+    again = _already_read(connection, desk, list(rows))
+    if again:
+        for table in (topic, reading):
+            connection.execute(
+                delete(table).where(table.c.desk == desk, table.c.item_id.in_(again))
+            )
+    connection.execute(
+        insert(reading),
+        [
+            {
+                "desk": desk,
+                "item_id": one.item_id,
+                "words": one.words,
+                "standing": one.standing,
+                "running": one.running,
+                "house": one.house,
+                "own": one.own,
+                "bits_per_word": one.bits_per_word,
+            }
+            for one in rows.values()
+        ],
+    )
+    topics = [
+        (desk, one.item_id, t.term, t.weight, t.own_share, t.count)
+        for one in rows.values()
+        for t in one.topics
+    ]
+    if topics:
+        # The driver's own executemany: these are the most rows by far.
+        connection.exec_driver_sql(
+            "INSERT INTO topic (desk, item_id, term, weight, own_share, count) "
+            "VALUES (?, ?, ?, ?, ?, ?)",
+            topics,
+        )
+
+
+def _already_read(connection: Connection, desk: str, item_ids: Sequence[int]) -> list[int]:
+    found: list[int] = []
+    for start in range(0, len(item_ids), 500):
+        part = item_ids[start : start + 500]
+        query = select(reading.c.item_id).where(reading.c.desk == desk, reading.c.item_id.in_(part))
+        found.extend(connection.execute(query).scalars())
+    return found
+
+
+def keep_stories(connection: Connection, stories: Sequence[StoryRecord]) -> dict[int, int]:
+    """Write stories as they stand; story number -> story id."""
+    ids = {}
+    for one in stories:
+        values = {
+            "noted_s": one.noted_s,
+            "raised_s": one.raised_s,
+            "last_activity_s": one.last_activity_s,
+            "cleared_s": one.cleared_s,
+            "headline_item_id": one.headline_item_id,
+            "bits": one.bits,
+            "threshold_bits": one.threshold_bits,
+        }
+        key = (story.c.desk == one.desk) & (story.c.number == one.number)
+        story_id = connection.execute(select(story.c.story_id).where(key)).scalar()
+        if story_id is None:
+            result = connection.execute(
+                insert(story).values(desk=one.desk, number=one.number, **values)
+            )
+            story_id = int(result.lastrowid)
+        else:
+            connection.execute(update(story).where(story.c.story_id == story_id).values(**values))
+        _keep_parts(connection, story_id, one)
+        ids[one.number] = story_id
+    return ids
+
+
+def _keep_parts(connection: Connection, story_id: int, one: StoryRecord) -> None:
+    connection.execute(delete(story_term).where(story_term.c.story_id == story_id))
+    connection.execute(
+        insert(story_term),
+        [
+            {
+                "story_id": story_id,
+                "term": t.term,
+                "bits": t.bits,
+                "seen": t.seen,
+                "expected": t.expected,
+                "joined_s": t.joined_s,
+            }
+            for t in one.terms
+        ],
+    )
+    connection.execute(
+        upsert(story_item).on_conflict_do_nothing(),
+        [{"story_id": story_id, "item_id": i.item_id, "added_s": i.added_s} for i in one.items],
+    )
