@@ -1,6 +1,5 @@
 """The command line."""
 
+from vanner.cli.app import main
 
-def main() -> None:
-    """Run the console command."""
-    raise SystemExit("The commands are not built yet.")
+__all__ = ["main"]

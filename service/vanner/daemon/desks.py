@@ -8,7 +8,7 @@ from dataclasses import dataclass
 
 from vanner.daemon.plan import DeskPlan, pack_plan, unpack_plan
 from vanner.errors import DatabaseError
-from vanner.model.desk import DeskModel, TermItem
+from vanner.model.desk import DeskModel, PulseResult, TermItem
 from vanner.model.state import STATE_VERSION, StateVersionError, pack, retune, unpack
 from vanner.records import StoredItem
 from vanner.store.checkpoints import Checkpoint
@@ -17,12 +17,22 @@ from vanner.store.pulses import pulses_between
 from vanner.terms import count_terms
 
 
+# Taught items of one pulse are read so many at a time, so that a long archive taught at once
+# is read against what its own beginning taught, and stays in memory.
+TAUGHT_AT_ONCE = 500
+
+
 @dataclass(slots=True)
 class Desk:
-    """A plan and the model that follows it."""
+    """A plan and the model that follows it.
+
+    Attributes:
+        started_s: What was received before is not the desk's.
+    """
 
     plan: DeskPlan
     model: DeskModel
+    started_s: float
 
     def checkpoint(self, at_s: float) -> Checkpoint:
         """The model's state after the pulse that ended at `at_s`."""
@@ -55,12 +65,27 @@ def _copy_key(item_id: int, terms: Mapping[str, int]) -> str:
     return hashlib.blake2b(text.encode("utf-8", "surrogatepass"), digest_size=16).hexdigest()
 
 
-def new_desk(plan: DeskPlan) -> Desk:
+def step(model: DeskModel, end_s: float, items: Sequence[TermItem]) -> list[PulseResult]:
+    """A pulse's items through a model: taught ones first, oldest first, then the rest at once."""
+    taught = sorted((item for item in items if item.teaches), key=lambda item: item.published_s)
+    results = [
+        model.step(end_s, taught[start : start + TAUGHT_AT_ONCE])
+        for start in range(0, len(taught), TAUGHT_AT_ONCE)
+    ]
+    arrived = [item for item in items if not item.teaches]
+    if arrived or not taught:
+        results.append(model.step(end_s, arrived))
+    return results
+
+
+def new_desk(plan: DeskPlan, started_s: float) -> Desk:
     """A desk that has read nothing."""
-    return Desk(plan, DeskModel(plan.parameters))
+    return Desk(plan, DeskModel(plan.parameters), started_s)
 
 
-def restored_desk(database: Database, plan: DeskPlan, saved: Checkpoint, read_s: float) -> Desk:
+def restored_desk(
+    database: Database, plan: DeskPlan, saved: Checkpoint, read_s: float, started_s: float
+) -> Desk:
     """A desk as it stood after the pulse that ended at `read_s`.
 
     The pulses after the checkpoint are derived again, under the plan of that time and without
@@ -81,11 +106,11 @@ def restored_desk(database: Database, plan: DeskPlan, saved: Checkpoint, read_s:
         clear_until(model, end_s, inclusive=False)
         mine = [item for item in items if earlier.reads(item.source)]
         if mine:
-            model.step(end_s, term_items(mine))
+            step(model, end_s, term_items(mine))
     clear_until(model, read_s, inclusive=True)
     if earlier.parameters != plan.parameters:
         retune(model, plan.parameters, read_s)
-    return Desk(plan, model)
+    return Desk(plan, model, started_s)
 
 
 def clear_until(model: DeskModel, limit_s: float, *, inclusive: bool) -> None:

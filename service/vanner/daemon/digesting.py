@@ -3,11 +3,12 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from datetime import datetime
 from typing import TYPE_CHECKING
 
 from vanner.clock import DAY_S
 from vanner.daemon.plan import DeskPlan
-from vanner.digests import compose_digest, digest_message
+from vanner.digests import ComposedDigest, compose_digest, digest_message
 from vanner.digests.schedule import Slot, slots
 from vanner.records import DigestContent
 from vanner.store.checkpoints import desk_starts
@@ -17,6 +18,7 @@ from vanner.store.digest_content import (
     has_slot,
     keep_digest,
     last_slot_s,
+    latest_digest,
     noted_between,
     raised_between,
     volumes_between,
@@ -74,9 +76,10 @@ def make_digest(
         slot: The slot.
         withheld: Keep the mail for the record only.
     """
-    if has_slot(connection, plan.desk, schedule, slot.local):
+    started_s = desk_starts(connection).get(plan.desk, slot.scheduled_s)
+    if slot.scheduled_s < started_s or has_slot(connection, plan.desk, schedule, slot.local):
         return
-    content = _content(connection, plan, schedule, slot)
+    content = _content(connection, plan, schedule, slot, started_s)
     composed = compose_digest(content, plan.zone)
     keep_digest(
         connection,
@@ -91,6 +94,7 @@ def make_digest(
             composed.body_text,
             composed.body_html,
         ),
+        filed=withheld,
     )
     if plan.recipients:
         message = digest_message(content, composed, plan.recipients, slot.scheduled_s)
@@ -116,3 +120,13 @@ def _content(connection: Connection, plan: DeskPlan, schedule: str, slot: Slot) 
         cleared=tuple(cleared_between(connection, desk, from_s, until_s)),
         volumes=tuple(volumes_between(connection, sources, from_s, until_s)),
     )
+
+
+def preview_digest(connection: Connection, plan: DeskPlan, now_s: float) -> ComposedDigest:
+    """What a desk's digest would say now, since its latest one of any schedule."""
+    made = latest_digest(connection, plan.desk)
+    started_s = desk_starts(connection).get(plan.desk, now_s)
+    from_s = started_s if made is None else made.scheduled_s
+    local = datetime.fromtimestamp(now_s, plan.zone).strftime("%Y-%m-%dT%H:%M")
+    content = _gathered(connection, plan, "", Slot(local, now_s), from_s)
+    return compose_digest(content, plan.zone)

@@ -15,10 +15,10 @@ import structlog
 
 from vanner.alerts.mail import compose_alert
 from vanner.clock import pulse_end_s, pulse_of
-from vanner.daemon.desks import Desk, new_desk, restored_desk, term_items
+from vanner.daemon.desks import Desk, new_desk, restored_desk, step, term_items
 from vanner.daemon.digesting import DigestBook, make_digest
 from vanner.daemon.plan import DeskPlan, pack_plan
-from vanner.store.checkpoints import begin_desk, checkpoint_of, keep_checkpoint
+from vanner.store.checkpoints import begin_desk, checkpoint_of, desk_starts, keep_checkpoint
 from vanner.store.outbox import queue
 from vanner.store.pulses import (
     ClockState,
@@ -115,21 +115,22 @@ class Engine:
             )
             for plan in self.plans:
                 begin_desk(connection, plan.desk, state.read_s)
+            starts = desk_starts(connection)
         self.read_s = state.read_s
-        self.desks = tuple(self._load(plan) for plan in self.plans)
+        self.desks = tuple(self._load(plan, starts[plan.desk]) for plan in self.plans)
         self._digests = DigestBook(self.plans, self.read_s)
         self._pulses_since = self._items_since = 0
         self._stale = False
 
-    def _load(self, plan: DeskPlan) -> Desk:
+    def _load(self, plan: DeskPlan, started_s: float) -> Desk:
         with self.database.read() as connection:
             saved = checkpoint_of(connection, plan.desk)
         if saved is not None:
-            desk = restored_desk(self.database, plan, saved, self.read_s)
+            desk = restored_desk(self.database, plan, saved, self.read_s, started_s)
             if saved.parameters == pack_plan(plan):
                 return desk
         else:
-            desk = new_desk(plan)
+            desk = new_desk(plan, started_s)
         # From here on the desk follows this plan: a crash must not bring the old one back.
         with self.database.write() as connection:
             keep_checkpoint(connection, plan.desk, desk.checkpoint(self.read_s))
@@ -221,11 +222,13 @@ class Engine:
         counted = list(zip(event.items, term_items(event.items), strict=True))
         raised: list[StoryLine] = []
         for desk in self.desks:
+            if event.end_s <= desk.started_s:
+                continue
             mine = [terms for item, terms in counted if desk.plan.reads(item.source)]
             due_s = desk.model.next_clearing_s()
             if mine or (due_s is not None and due_s <= event.end_s):
-                result = desk.model.step(event.end_s, mine)
-                raised += self._keep(connection, desk.plan, result, event.end_s)
+                for result in step(desk.model, event.end_s, mine):
+                    raised += self._keep(connection, desk.plan, result, event.end_s)
         return tuple(raised)
 
     def _keep(

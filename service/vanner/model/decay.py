@@ -9,6 +9,7 @@ comes late would get the weight of its arrival and not that of its time.
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass, field
 
 import numpy as np
@@ -28,22 +29,28 @@ class Decay:
     Attributes:
         half_life_s: Time after which an occurrence counts half, in seconds.
         landmark_s: The time whose occurrences have stored weight one, or None before the first.
+        growth: The function g of an occurrence's age in half-lives at the landmark; its weight
+            at T is g(t - L) / g(T - L). Only for the exponential, Vanner's own, may the
+            landmark move.
     """
 
     half_life_s: float
     landmark_s: float | None = None
+    growth: Callable[[Floats], Floats] = np.exp2
 
     def stored_weight(self, times_s: Floats) -> Floats:
         """Stored weight of occurrences at `times_s`, (n,) float64 seconds -> (n,) float64."""
         if self.landmark_s is None:
             return np.ones_like(times_s)
-        return np.exp2((times_s - self.landmark_s) / self.half_life_s)
+        return self.growth((times_s - self.landmark_s) / self.half_life_s)
 
     def factor_at(self, now_s: float) -> float:
         """What turns a stored sum into its value at `now_s`; 1 before the first occurrence."""
         if self.landmark_s is None:
             return 1.0
-        return float(np.exp2(-(now_s - self.landmark_s) / self.half_life_s))
+        with np.errstate(over="ignore"):  # beyond 2^1023 nothing is left of the stored sum
+            growth = self.growth(np.asarray((now_s - self.landmark_s) / self.half_life_s))
+        return 1.0 / float(growth)
 
     def move_landmark(self, now_s: float) -> float:
         """Move the landmark up to `now_s` if it is far behind; the factor to rescale sums by.

@@ -52,7 +52,7 @@ def exact_theta(counts: Floats, background: Floats, background_share: float) -> 
     nu = np.take_along_axis(level, last[:, None], axis=1)
     nu = np.where(nu > 0, nu, 1.0)
     keep = np.arange(active.shape[1])[None, :] <= last[:, None]
-    keep &= active.any(axis=1)[:, None]
+    keep &= np.logical_or.reduce(active, axis=1)[:, None]
     theta = np.where(keep, sorted_counts / nu - odds * sorted_background, 0.0)
     result = np.zeros_like(theta)
     np.put_along_axis(result, order, np.maximum(theta, 0.0), axis=1)

@@ -81,8 +81,8 @@ def accept(
 
 def _known(
     connection: Connection, keys: Sequence[tuple[str, str]]
-) -> dict[tuple[str, str], tuple[int, int, str]]:
-    """(item id, latest revision, its content digest) of those keys that exist."""
+) -> dict[tuple[str, str], tuple[int, int, str, float]]:
+    """(item id, latest revision, its digest and time of receipt) of those keys that exist."""
     query = (
         select(
             item.c.source,
@@ -90,6 +90,7 @@ def _known(
             item.c.item_id,
             item.c.latest_revision,
             item_revision.c.content_digest,
+            item_revision.c.received_s,
         )
         .join(
             item_revision,
@@ -108,7 +109,7 @@ def _known(
             rows = connection.execute(
                 query, {"s": source, "g": guids[start : start + _KEYS_A_QUERY]}
             )
-            found.update({(row[0], row[1]): (row[2], row[3], row[4]) for row in rows})
+            found.update({(row[0], row[1]): (row[2], row[3], row[4], row[5]) for row in rows})
     return found
 
 
@@ -160,16 +161,18 @@ def _insert(
 
 def _revise(
     connection: Connection,
-    known: tuple[int, int, str],
+    known: tuple[int, int, str, float],
     one: Item,
     received_s: float | None,
     *,
     teaches: bool,
 ) -> Accepted:
-    item_id, latest, digest = known
+    item_id, latest, digest, before_s = known
     if digest == one.content_digest:
         return Accepted(known=1)
-    row = _revision_row(item_id, latest + 1, one, received_s, teaches=teaches)
+    # In an archive out of order a later revision may bear an earlier date.
+    time_s = max(before_s, one.published_s if received_s is None else received_s)
+    row = _revision_row(item_id, latest + 1, one, time_s, teaches=teaches)
     connection.execute(insert(item_revision), row)
     connection.execute(
         update(item).where(item.c.item_id == item_id).values(latest_revision=latest + 1)

@@ -131,8 +131,14 @@ def _volume(connection: Connection, source: str, from_s: float, until_s: float) 
     return SourceVolume(source, int(now), usual, last_s, quiet)
 
 
-def keep_digest(connection: Connection, row: DigestRow) -> int:
-    """Store a digest under its slot; its number. The slot must be free."""
+def keep_digest(connection: Connection, row: DigestRow, *, filed: bool) -> int:
+    """Store a digest under its slot, which must be free; its number.
+
+    Args:
+        connection: A write transaction.
+        row: The digest.
+        filed: Whether its file counts as written already (a rebuilt database files nothing).
+    """
     result = connection.execute(
         insert(digest).values(
             desk=row.desk,
@@ -144,7 +150,7 @@ def keep_digest(connection: Connection, row: DigestRow) -> int:
             subject=row.subject,
             body_text=row.body_text,
             body_html=row.body_html,
-            filed=False,
+            filed=filed,
         )
     )
     return int(result.lastrowid)

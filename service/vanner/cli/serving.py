@@ -1,0 +1,92 @@
+"""run: the daemon."""
+
+from __future__ import annotations
+
+import os
+import random
+import signal
+import sys
+import threading
+from collections.abc import Iterator
+from contextlib import contextmanager
+from types import FrameType
+
+import typer
+
+from vanner.cli.console import DEFAULT_SETTINGS, SettingsOption, set_up_log
+from vanner.clock import now_s
+from vanner.daemon.engine import Engine
+from vanner.daemon.lock import sole_daemon
+from vanner.daemon.plan import plans_from
+from vanner.daemon.posting import Postman
+from vanner.daemon.service import Service
+from vanner.settings import Settings, load_settings
+from vanner.sources import build_source
+from vanner.store.database import Database
+
+
+@contextmanager
+def stop_signals() -> Iterator[threading.Event]:
+    """An event that SIGTERM and SIGINT set, for the length of the block."""
+    stop = threading.Event()
+
+    def on_signal(_number: int, _frame: FrameType | None) -> None:
+        stop.set()
+
+    earlier = {number: signal.signal(number, on_signal) for number in (signal.SIGTERM, signal.SIGINT)}
+    try:
+        yield stop
+    finally:
+        for number, handler in earlier.items():
+            signal.signal(number, handler)
+
+
+def build_service(settings: Settings, database: Database) -> Service:
+    """The service that settings describe.
+
+    Raises:
+        SettingsError: A secret cannot be read.
+    """
+    plans = plans_from(settings)
+    mail = settings.mail
+    password = mail.password.read() if mail is not None and mail.password is not None else None
+    sources = [(build_source(one), one.kind, one.every) for one in settings.source]
+    return Service(
+        database,
+        Engine(database, plans, settings.service.pulse),
+        Postman(database, plans, mail, password, now_s),
+        sources,
+        random.Random(),  # noqa: S311 - jitter of polling times, not secrecy
+        now_s,
+    )
+
+
+def run(
+    settings: SettingsOption = DEFAULT_SETTINGS,
+    migrate: bool = typer.Option(True, help="Bring an older database up to date on start."),
+) -> None:
+    """Serve: poll the sources, close pulses, raise alerts, send digests, until SIGTERM.
+
+    Example: vanner run --settings vanner.toml
+    """
+    told = load_settings(settings)
+    set_up_log(told.service.log)
+    path = told.database_path
+    with stop_signals() as stop, sole_daemon(path):
+        database = Database.open(path, migrate=migrate)
+        service = build_service(told, database)
+        service.start()
+        stop.wait()
+        service.stop()
+        database.close()
+    sys.stdout.flush()
+    sys.stderr.flush()
+    # A poll may hang in the network for up to a minute, and the interpreter would wait for
+    # its thread. Everything is committed by now, and what a poll was about to bring is there
+    # at the next start.
+    os._exit(0)
+
+
+def add_to(app: typer.Typer) -> None:
+    """Add this command."""
+    app.command("run")(run)

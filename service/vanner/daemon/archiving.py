@@ -1,0 +1,160 @@
+"""Archives: replaying them into a database of their own, and teaching a desk from them."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterable, Iterator, Sequence
+from dataclasses import dataclass
+from itertools import islice
+from pathlib import Path
+
+from vanner.clock import pulse_end_s, pulse_of
+from vanner.daemon.engine import Engine, Progress
+from vanner.daemon.plan import DeskPlan
+from vanner.errors import DatabaseError, InputError, RejectedItemError
+from vanner.intake import take_in
+from vanner.records import Item, RawItem
+from vanner.sources.archive import ArchiveFault, read_archive
+from vanner.store.accept import Accepted, accept, receive_time_s
+from vanner.store.copying import received_range_s
+from vanner.store.database import Database
+from vanner.store.pulses import clock_state
+from vanner.store.source_states import register
+
+PURPOSE = "replay"
+_BATCH = 1000
+_PULSES_PER_COMMIT = 200
+
+
+@dataclass(slots=True)
+class Intake:
+    """What became of an archive's lines."""
+
+    accepted: Accepted = Accepted()
+    faults: int = 0
+
+
+def open_fresh(path: Path) -> Database:
+    """A new database for a replay; one that an earlier replay made is replaced.
+
+    Raises:
+        DatabaseError: The file is a service's database or something else: it is left alone.
+    """
+    if path.exists() and path.stat().st_size > 0:
+        database = Database.open(path, create=False, migrate=False)
+        with database.read() as connection:
+            state = clock_state(connection)
+        database.close()
+        if state is not None and state.purpose != PURPOSE:
+            raise DatabaseError(
+                f"The database {path} serves a daemon and is not replaced; name another file."
+            )
+        for name in (path.name, f"{path.name}-wal", f"{path.name}-shm"):
+            path.with_name(name).unlink(missing_ok=True)
+    return Database.open(path)
+
+
+def archive_items(paths: Sequence[Path], on_fault: Callable[[str], None]) -> Iterator[RawItem]:
+    """The items of archives in their order; faults are reported and left out.
+
+    Raises:
+        InputError: An archive cannot be opened.
+    """
+    for path in paths:
+        for entry in read_archive(path):
+            if isinstance(entry, ArchiveFault):
+                on_fault(entry.sentence)
+            else:
+                yield entry
+
+
+def accept_archive(
+    database: Database,
+    raw_items: Iterable[RawItem],
+    default_source: str,
+    on_fault: Callable[[str], None],
+    on_items: Callable[[int], None],
+) -> Accepted:
+    """Accept an archive's items as received at their published times.
+
+    Args:
+        database: A new database.
+        raw_items: In any order.
+        default_source: For items that name none.
+        on_fault: Told each item that is left out, in a sentence.
+        on_items: Told how many more items were accepted.
+    """
+    total = Accepted()
+    taken = _taken_in(raw_items, default_source, on_fault)
+    while batch := list(islice(taken, _BATCH)):
+        with database.write() as connection:
+            register(connection, sorted({(item.source, "archive") for item in batch}))
+            total += accept(connection, batch, None, teaches=False)
+        on_items(len(batch))
+    return total
+
+
+def _taken_in(
+    raw_items: Iterable[RawItem], default_source: str, on_fault: Callable[[str], None]
+) -> Iterator[Item]:
+    for raw in raw_items:
+        if raw.published_s is None:
+            on_fault(f'item "{raw.guid}": no usable date ({raw.date_raw}); it is left out.')
+            continue
+        try:
+            item = take_in(raw, default_source, raw.published_s)
+        except RejectedItemError as error:
+            on_fault(str(error))
+            continue
+        yield item
+
+
+def replay(
+    database: Database, plans: Sequence[DeskPlan], on_pulse: Callable[[Progress], None]
+) -> float:
+    """Run an engine over everything that a database has received; the end of its last pulse.
+
+    Raises:
+        InputError: There is nothing to replay.
+        DatabaseError: The database refused.
+    """
+    with database.read() as connection:
+        span = received_range_s(connection)
+    if span is None:
+        raise InputError("The archive holds no usable item; nothing was replayed.")
+    pulse_s = plans[0].parameters.pulse_s
+    engine = Engine(database, plans, pulse_s, purpose=PURPOSE, pulses_per_commit=_PULSES_PER_COMMIT)
+    engine.begin(span[0])
+    end_s = pulse_end_s(pulse_of(span[1], pulse_s), pulse_s)
+    engine.advance(end_s, on_pulse)
+    engine.save()
+    return end_s
+
+
+def teach(
+    database: Database,
+    raw_items: Iterable[RawItem],
+    source: str,
+    now_s: Callable[[], float],
+    on_fault: Callable[[str], None],
+    on_items: Callable[[int], None],
+) -> Accepted:
+    """Accept an archive's items into a service's database so that they only teach.
+
+    A running daemon reads them when its pulse closes; otherwise the next one to start does.
+    """
+    total = Accepted()
+
+    def kept() -> Iterator[Item]:
+        for raw in raw_items:
+            try:
+                yield take_in(raw, source, now_s())
+            except RejectedItemError as error:
+                on_fault(str(error))
+
+    taken = kept()
+    while batch := list(islice(taken, _BATCH)):
+        with database.write() as connection:
+            received_s = receive_time_s(connection, now_s())
+            total += accept(connection, batch, received_s, teaches=True)
+        on_items(len(batch))
+    return total

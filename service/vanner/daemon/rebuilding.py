@@ -1,0 +1,84 @@
+"""Deriving every result again from the items that a database has received."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+from pathlib import Path
+
+from vanner.daemon.engine import Engine, Progress
+from vanner.daemon.plan import DeskPlan, unpack_plan
+from vanner.errors import DatabaseError
+from vanner.store.checkpoints import checkpoint_of, desk_starts
+from vanner.store.copying import copy_received, received_range_s
+from vanner.store.database import Database
+from vanner.store.outbox import handled, take_over
+from vanner.store.pulses import ClockState, clock_state, start_clock
+
+_PULSES_PER_COMMIT = 200
+
+
+def recorded_plans(database: Database) -> tuple[DeskPlan, ...]:
+    """The plans that a database's desks followed last, by name; digests are not recorded."""
+    with database.read() as connection:
+        saved = [checkpoint_of(connection, desk) for desk in sorted(desk_starts(connection))]
+    return tuple(unpack_plan(one.parameters) for one in saved if one is not None)
+
+
+def rebuild(
+    old: Database,
+    into: Path,
+    plans: Sequence[DeskPlan],
+    pulse_s: float,
+    on_pulse: Callable[[Progress], None],
+) -> int:
+    """Fill a new database with the old one's items and derive every result from them.
+
+    Mail that the old database sent or queued keeps its state; mail that it never had is kept
+    for the record and not sent.
+
+    Args:
+        old: The database to derive from; it is only read and may be in use.
+        into: The new file; it must not exist.
+        plans: The desks, as they should have been all along.
+        pulse_s: Length of a pulse.
+        on_pulse: Called after each pulse that held items.
+
+    Returns:
+        The number of items.
+
+    Raises:
+        DatabaseError: The new file exists, or a database refused.
+    """
+    if into.exists():
+        raise DatabaseError(f"The file {into} exists; name one that does not.")
+    new = Database.open(into)
+    try:
+        with old.read() as source:
+            state = clock_state(source)
+            starts = desk_starts(source)
+            span = received_range_s(source)
+            mail = handled(source)
+            with new.write() as target:
+                items = copy_received(source, target)
+        if state is None:
+            return items
+        first_s = min([*starts.values(), *(span[:1] if span else ())], default=state.read_s)
+        engine = Engine(
+            new,
+            plans,
+            pulse_s,
+            purpose=state.purpose,
+            withhold_mail=True,
+            pulses_per_commit=_PULSES_PER_COMMIT,
+        )
+        with new.write() as target:
+            begin_s = first_s // pulse_s * pulse_s
+            start_clock(target, ClockState(pulse_s, begin_s, begin_s, state.purpose))
+        engine.begin(begin_s)
+        engine.advance(state.read_s, on_pulse)
+        engine.save()
+        with new.write() as target:
+            take_over(target, mail)
+    finally:
+        new.close()
+    return items
