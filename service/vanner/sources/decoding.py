@@ -24,8 +24,8 @@ _NO_CHARSETS = {
     "idna", "mbcs", "oem", "punycode", "raw-unicode-escape", "raw_unicode_escape",
     "undefined", "unicode-escape", "unicode_escape", "unicode_internal", "utf-7",
 }  # fmt: skip
-# The WHATWG Encoding Standard reads both names as windows-1252.
-_WEST = {"ascii", "iso8859-1"}
+# The WHATWG Encoding Standard reads this name as windows-1252.
+_WEST = "iso8859-1"
 _META = re.compile(rb"""<meta[^>]{1,1000}?charset\s*=\s*["']?\s*([\w.:-]{1,40})""", re.IGNORECASE)
 _META_WITHIN_BYTES = 4096
 _HIGH = re.compile(rb"[\x80-\xff]")
@@ -71,7 +71,7 @@ def _python_name(name: str | None) -> str | None:
         return None
     if encoding in _NO_CHARSETS:
         return None
-    return "cp1252" if encoding in _WEST else encoding
+    return "cp1252" if encoding == _WEST else encoding
 
 
 def _meta_charset(data: bytes) -> str | None:

@@ -113,12 +113,18 @@ def put_away(folder: Path, file: Finished) -> str | None:
         path.replace(target)
     except OSError as error:
         return str(error.strerror)
-    if stamp_of(target) not in (file.stamp, None):
-        # Another file took the name after we looked at it: it has not been read, so back.
-        with contextlib.suppress(OSError):
-            note.unlink(missing_ok=True)
-            target.replace(free_path(folder, file.name))
+    if stamp_of(target) != file.stamp:
+        return_unread(folder, target)
     return None
+
+
+def return_unread(folder: Path, moved: Path) -> None:
+    """Bring a file back that took the place of another just as that was moved: it has not
+    been read. Its name there may be taken once more, so it may get a number.
+    """
+    with contextlib.suppress(OSError):
+        moved.with_name(moved.name + ".reason").unlink(missing_ok=True)
+        moved.replace(free_path(folder, moved.name))
 
 
 def free_path(folder: Path, name: str) -> Path:

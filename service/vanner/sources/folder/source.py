@@ -29,7 +29,7 @@ class FolderSource:
         self._settings = settings
         self._settle_s = settle_s
         self._batch_items = batch_items
-        self._taker = Taker(settings.path)
+        self._taker = Taker(settings.path, settings.language)
 
     @property
     def name(self) -> str:

@@ -8,6 +8,7 @@ from dataclasses import replace
 from pathlib import Path
 
 from vanner.errors import SourceError
+from vanner.records import RawItem
 from vanner.sources.archive import ArchiveFault, Line, archive_lines
 from vanner.sources.batch import Batch
 from vanner.sources.folder.documents import DOCUMENT_BYTES, document_item
@@ -31,8 +32,9 @@ def rejected(file: Progress, reason: str, batch: Batch) -> Finished:
 class Taker:
     """Takes files of one folder. An archive stays open between polls that continue it."""
 
-    def __init__(self, folder: Path) -> None:
+    def __init__(self, folder: Path, language: str | None) -> None:
         self._folder = folder
+        self._language = language
         self._lines: Generator[Line, None, None] | None = None
         self._reading: Progress | None = None
 
@@ -82,18 +84,34 @@ class Taker:
         found = document_item(data, split_name(file.name)[0], extension)
         if isinstance(found, str):
             return rejected(file, found, part)
-        part.add(found, len(data))
+        part.add(self._owned(found), len(data))
         return Finished(name=file.name, stamp=file.stamp)
 
     def _take_lines(self, file: Progress, part: Batch) -> Finished | Progress:
         lines, now = self._lines_after(file), file
         for line in lines:
-            now = _after(now, line, part)
+            now = self._after(now, line, part)
             if part.full:
                 self._reading = now
                 return now
         self.close()
         return _finished(now, part)
+
+    def _after(self, file: Progress, line: Line, part: Batch) -> Progress:
+        """The file's progress after one more line, whose item or fault joins the batch."""
+        if isinstance(line.result, ArchiveFault):
+            sentence = line.result.sentence
+            part.faults.append(sentence)
+            reasons = (*file.reasons, sentence)[:_MOST_REASONS]
+            return file.model_copy(
+                update={"line": line.number, "left_out": file.left_out + 1, "reasons": reasons}
+            )
+        part.add(self._owned(line.result), line.size_bytes)
+        return file.model_copy(update={"line": line.number, "accepted": file.accepted + 1})
+
+    def _owned(self, item: RawItem) -> RawItem:
+        """The item as this source's own, whatever source an archive's line names."""
+        return replace(item, source=None, language=item.language or self._language)
 
     def _lines_after(self, file: Progress) -> Generator[Line, None, None]:
         if self._lines is None or self._reading != file:
@@ -112,20 +130,6 @@ class Taker:
         if self._lines is not None:
             self._lines.close()
         self._lines = None
-
-
-def _after(file: Progress, line: Line, part: Batch) -> Progress:
-    """The file's progress after one more line, whose item or fault joins the batch."""
-    if isinstance(line.result, ArchiveFault):
-        sentence = line.result.sentence
-        part.faults.append(sentence)
-        reasons = (*file.reasons, sentence)[:_MOST_REASONS]
-        return file.model_copy(
-            update={"line": line.number, "left_out": file.left_out + 1, "reasons": reasons}
-        )
-    # What a file holds is this source's, whatever source a line names.
-    part.add(replace(line.result, source=None), line.size_bytes)
-    return file.model_copy(update={"line": line.number, "accepted": file.accepted + 1})
 
 
 def _finished(file: Progress, part: Batch) -> Finished:
