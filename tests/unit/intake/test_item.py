@@ -153,7 +153,7 @@ def assert_fit_to_keep(value: str, most_bytes: int) -> None:
     assert not [c for c in value if c != "\n" and unicodedata.category(c) in {"Cc", "Cs"}]
 
 
-@settings(max_examples=400)
+@settings(max_examples=400, deadline=None)
 @given(RAW_ITEMS, st.floats(1e9, 2e9))
 def test_any_entry_gives_an_item_fit_to_keep_or_is_rejected(raw, now_s):
     try:

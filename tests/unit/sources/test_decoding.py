@@ -3,7 +3,7 @@
 import codecs
 
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from vanner.sources.decoding import decode
@@ -88,6 +88,7 @@ def test_no_bytes_are_no_text():
     assert decode(b"") == ""
 
 
+@settings(deadline=None)
 @given(st.binary(max_size=300), st.none() | st.text(max_size=20), st.booleans())
 def test_any_bytes_under_any_name_give_text_without_surrogates(data, declared, html):
     decode(data, declared, html=html).encode("utf-8")

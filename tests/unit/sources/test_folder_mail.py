@@ -5,7 +5,7 @@ from email.message import EmailMessage
 from email.policy import SMTP
 
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from vanner.clock import parse_iso
@@ -146,12 +146,35 @@ def test_parts_nested_beyond_reason_are_told():
     assert mail_item(b"Subject: a\n" + head.encode(), "g") == "its parts are nested too deeply"
 
 
+@pytest.mark.parametrize(
+    ("data", "kept"),
+    [
+        (b"Content-Type: multipart/mixed; boundary=b\n\n" + b"--b\n\nx\n" * 999, True),
+        (b"Content-Type: multipart/mixed; boundary=b\n\n" + b"--b\n\nx\n" * 1000, False),
+        (b"X: a\n" * 999, True),
+        (b"X: a\n" * 1000, False),
+    ],
+)
+def test_a_mail_of_excessive_parts_or_headers_is_told(data, kept):
+    found = mail_item(b"Subject: a\n" + data, "g")
+    if kept:
+        assert found.title == "a"
+    else:
+        assert found == "it has more than 1000 parts, or as many headers in one"
+
+
+def test_a_mail_of_excessive_lines_is_told():
+    data = b"Subject: a\n\n" + b"\n" * 2_000_000
+    assert mail_item(data, "g") == "it has more than 2000000 lines"
+
+
 def test_a_hostile_parameter_list_takes_no_squared_time():
     # Uncut, the library would compare some 10^12 characters here.
     data = b'Content-Type: text/plain; x="' + b";" * 2_000_000 + b"\nSubject: a\n\nText"
     assert item_of(data).content_text == b"Text"
 
 
+@settings(deadline=None)
 @given(st.binary(max_size=400), st.sampled_from([b"", b"Subject: ", b"Content-Type: "]))
 def test_any_bytes_give_an_item_or_a_reason(data, start):
     assert isinstance(mail_item(start + data, "g"), RawItem | str)

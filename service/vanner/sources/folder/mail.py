@@ -2,21 +2,37 @@
 
 from __future__ import annotations
 
+import itertools
 import re
 from collections.abc import Iterator
 from datetime import UTC
 from email import message_from_bytes
 from email.message import Message
-from email.policy import Compat32
+from email.policy import Compat32, Policy, compat32
 from email.utils import parsedate_to_datetime
 
 from vanner.records import RawItem
 from vanner.sources.folder.words import decode_words
 
 _HEADER_CHARACTERS = 8000
-_MOST_PARTS = 1000
+# A mail of 50 MB in base64 has some 700,000.
+_MOST_LINES = 2_000_000
+_MOST_PARTS = _MOST_HEADERS = 1000
 _IDENTIFIER = re.compile(r"<\s*([^<>\s]{1,1000})\s*>")
 _TEXTS = ("text/plain", "text/html")
+
+
+class _ExcessError(Exception):
+    """The mail has more parts or headers than any that people send."""
+
+
+class _Part(Message):
+    """A part whose number of headers is bounded."""
+
+    def set_raw(self, name: str, value: str) -> None:
+        if len(self) >= _MOST_HEADERS:
+            raise _ExcessError
+        super().set_raw(name, value)
 
 
 class _BoundedHeaders(Compat32):
@@ -40,11 +56,15 @@ def mail_item(data: bytes, guid: str) -> RawItem | str:
         data: The mail as it was sent.
         guid: The identifier of a mail that has no Message-ID.
     """
+    if data.count(b"\n") > _MOST_LINES:
+        return f"it has more than {_MOST_LINES} lines"
     try:
-        mail = message_from_bytes(data, policy=_BoundedHeaders())
+        mail = _parsed(data)
         bodies = dict(reversed([*_bodies(mail)]))
     except RecursionError:
         return "its parts are nested too deeply"
+    except _ExcessError:
+        return f"it has more than {_MOST_PARTS} parts, or as many headers in one"
     title = decode_words(_header(mail, "Subject"))
     date_raw = _header(mail, "Date").strip()
     identifier = _IDENTIFIER.search(_header(mail, "Message-ID"))
@@ -63,6 +83,18 @@ def mail_item(data: bytes, guid: str) -> RawItem | str:
     )
 
 
+def _parsed(data: bytes) -> Message:
+    parts = itertools.count()
+
+    def part(policy: Policy = compat32) -> _Part:
+        # The library makes one more than it uses.
+        if next(parts) > _MOST_PARTS:
+            raise _ExcessError
+        return _Part(policy=policy)
+
+    return message_from_bytes(data, part, policy=_BoundedHeaders())
+
+
 def _header(mail: Message, name: str) -> str:
     """The first header of that name, unfolded; "" where there is none.
 
@@ -76,9 +108,9 @@ def _header(mail: Message, name: str) -> str:
 
 def _bodies(mail: Message) -> Iterator[tuple[str, tuple[bytes, str | None]]]:
     """Kind, bytes and charset of each text that is no attachment, in the mail's order."""
-    waiting, seen = [mail], 0
-    while waiting and seen < _MOST_PARTS:
-        part, seen = waiting.pop(), seen + 1
+    waiting = [mail]
+    while waiting:
+        part = waiting.pop()
         kind, payload = part.get_content_type(), part.get_payload()
         if part.get_content_disposition() == "attachment" or kind.startswith("message/"):
             continue
