@@ -1,5 +1,6 @@
 """Settings: one TOML file, read once, frozen, checked at start with all its faults at once."""
 
+from vanner.settings.load import load_settings
 from vanner.settings.models import (
     DeskSettings,
     FeedSettings,
@@ -10,6 +11,7 @@ from vanner.settings.models import (
     Settings,
     SourceSettings,
 )
+from vanner.settings.template import write_template
 
 __all__ = [
     "DeskSettings",
@@ -20,4 +22,6 @@ __all__ = [
     "ServiceSettings",
     "Settings",
     "SourceSettings",
+    "load_settings",
+    "write_template",
 ]

@@ -9,56 +9,49 @@ from __future__ import annotations
 import os
 from pathlib import Path
 from typing import Annotated, Literal
-from zoneinfo import ZoneInfo, ZoneInfoNotFoundError
+from zoneinfo import ZoneInfo
 
-from croniter import croniter
-from pydantic import AfterValidator, BaseModel, ConfigDict, Field, model_validator
+from pydantic import BaseModel, ConfigDict, Field, model_validator
 
 from vanner.errors import SettingsError
-from vanner.settings.duration import DurationS
+from vanner.settings.duration import DurationS, PulseS
+from vanner.settings.values import (
+    SQLITE,
+    Address,
+    Cron,
+    DatabaseUrl,
+    FolderPath,
+    HostName,
+    LanguageTag,
+    Name,
+    Number,
+    UserName,
+    VariableName,
+    WebAddress,
+    WholeNumber,
+    YesNo,
+    ZoneName,
+)
 
-
-def _known_zone(name: str) -> str:
-    try:
-        ZoneInfo(name)
-    except (ZoneInfoNotFoundError, ValueError, OSError) as error:
-        raise ValueError('a time zone of the IANA database, such as "Europe/Vienna"') from error
-    return name
-
-
-def _five_field_cron(text: str) -> str:
-    if len(text.split()) != 5 or not croniter.is_valid(text):
-        raise ValueError('five cron fields (minute hour day month weekday), such as "0 7 * * *"')
-    return " ".join(text.split())
-
-
-def _address(text: str) -> str:
-    local, at, domain = text.strip().rpartition("@")
-    if not (local and at and domain) or any(c.isspace() or c in "<>,;" for c in text.strip()):
-        raise ValueError('a mail address such as "desk@example.org"')
-    return text.strip()
-
-
-ZoneName = Annotated[str, AfterValidator(_known_zone)]
-Cron = Annotated[str, AfterValidator(_five_field_cron)]
-Address = Annotated[str, AfterValidator(_address)]
-Name = Annotated[str, Field(min_length=1, max_length=64, pattern=r"^[\w][\w .:/@-]*$")]
+ONE_PLACE = 'either { env = "NAME" } or { file = "PATH" }'
 
 
 class _Model(BaseModel):
-    model_config = ConfigDict(frozen=True, extra="forbid", str_strip_whitespace=True)
+    model_config = ConfigDict(
+        frozen=True, extra="forbid", str_strip_whitespace=True, hide_input_in_errors=True
+    )
 
 
 class Secret(_Model):
     """Where a secret is to be had: an environment variable or a file. Never the value itself."""
 
-    env: str | None = None
-    file: Path | None = None
+    env: VariableName | None = None
+    file: FolderPath | None = None
 
     @model_validator(mode="after")
     def _one_place(self) -> Secret:
         if (self.env is None) == (self.file is None):
-            raise ValueError('either { env = "NAME" } or { file = "PATH" }')
+            raise ValueError(ONE_PLACE)
         return self
 
     def read(self) -> str:
@@ -86,32 +79,34 @@ class Secret(_Model):
 class ServiceSettings(_Model):
     """`[service]`: the database, the time zone, the pulse and the log."""
 
-    database: str = "sqlite:///vanner.db"
+    database: Annotated[DatabaseUrl, Field(validate_default=True)] = "sqlite:///vanner.db"
     timezone: ZoneName = "UTC"
-    pulse: DurationS = 60.0
+    pulse: PulseS = 60.0
     log: Literal["text", "json"] = "text"
 
 
-class _SourceBase(_Model):
+class SourceBase(_Model):
+    """What every kind of source has."""
+
     name: Name
     every: DurationS = 300.0
-    language: str | None = None
+    language: LanguageTag | None = None
 
 
-class FeedSettings(_SourceBase):
+class FeedSettings(SourceBase):
     """A `[[source]]` of kind "feed": RSS, Atom or JSON Feed at an http or https address."""
 
     kind: Literal["feed"]
-    url: Annotated[str, Field(pattern=r"^https?://\S+$")]
-    username: str | None = None
+    url: WebAddress
+    username: UserName | None = None
     password: Secret | None = None
 
 
-class FolderSettings(_SourceBase):
+class FolderSettings(SourceBase):
     """A `[[source]]` of kind "folder": files dropped into a directory."""
 
     kind: Literal["folder"]
-    path: Path
+    path: FolderPath
     every: DurationS = 5.0
 
 
@@ -127,19 +122,19 @@ class DeskSettings(_Model):
 
     name: Name
     sources: Annotated[tuple[str, ...], Field(min_length=1)]
-    alerts_per_day: Annotated[float, Field(gt=0, le=1000)] = 5.0
-    false_alerts_per_day: Annotated[float, Field(gt=0, le=1000)] | None = None
+    alerts_per_day: Annotated[Number, Field(gt=0, le=1000)] = 5.0
+    false_alerts_per_day: Annotated[Number, Field(gt=0, le=1000)] | None = None
     digests: tuple[Cron, ...] = ()
     recipients: tuple[Address, ...] = ()
-    mail_alerts: bool = True
-    digest_folder: Path | None = None
+    mail_alerts: YesNo = True
+    digest_folder: FolderPath | None = None
     timezone: ZoneName | None = None
     warm_up: DurationS = 3 * 86400.0
-    warm_up_words: Annotated[int, Field(ge=0)] = 20_000
+    warm_up_words: Annotated[WholeNumber, Field(ge=0)] = 20_000
     warm_up_at_most: DurationS = 14 * 86400.0
     standing_half_life: DurationS = 28 * 86400.0
     running_half_life: DurationS = 86400.0
-    background_share: Annotated[float, Field(gt=0, lt=1)] = 0.9
+    background_share: Annotated[Number, Field(gt=0, lt=1)] = 0.9
     clear_after: DurationS = 2 * 86400.0
 
     @property
@@ -153,22 +148,27 @@ class DeskSettings(_Model):
 class MailSettings(_Model):
     """`[mail]`: the server that takes outgoing mail."""
 
-    host: Annotated[str, Field(min_length=1)]
-    port: Annotated[int, Field(ge=1, le=65535)] = 587
+    host: HostName
+    port: Annotated[WholeNumber, Field(ge=1, le=65535)] = 587
     sender: Address
     encryption: Literal["starttls", "tls", "none"] = "starttls"
-    username: str | None = None
+    username: UserName | None = None
     password: Secret | None = None
     timeout: DurationS = 30.0
 
 
 class Settings(_Model):
-    """The whole file. `path` is where it was read from; relative paths start at its folder."""
+    """The whole file. Read by `load_settings`, its paths start at the file's own folder."""
 
     service: ServiceSettings = ServiceSettings()
     source: tuple[SourceSettings, ...] = ()
     desk: tuple[DeskSettings, ...] = ()
     mail: MailSettings | None = None
+
+    @property
+    def database_path(self) -> Path:
+        """The database's file, absolute."""
+        return Path(self.service.database.removeprefix(SQLITE)).absolute()
 
     def source_named(self, name: str) -> SourceSettings:
         """The source of that name.
