@@ -213,6 +213,15 @@ def test_truncated_gzip_gives_every_whole_line_and_one_fault(tmp_path, share):
     ]
 
 
+def test_truncated_gzip_that_unpacks_a_thousandfold_gives_every_whole_line(tmp_path):
+    data = line(1) * 3000
+    packed = gzip.compress(data)
+    # Each byte unpacks to some thousand, so these cuts pass over the end of an output.
+    for cut in range(30, len(packed) - 10):
+        plain = zlib.decompressobj(wbits=31).decompress(packed[:cut])
+        assert len(guids(read(tmp_path, packed[:cut]))) == plain.count(b"\n")
+
+
 def test_gzip_overwritten_amid_its_data_keeps_every_line_before(tmp_path):
     data = many(3000)
     packed = gzip.compress(data)

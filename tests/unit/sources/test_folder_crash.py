@@ -11,9 +11,11 @@ import random
 import pytest
 
 from vanner.settings import FolderSettings
+from vanner.sources.batch import Batch
 from vanner.sources.folder import FolderSource
 from vanner.sources.folder.files import make_ready, put_away, return_unread, stamp_of
-from vanner.sources.folder.state import Finished
+from vanner.sources.folder.state import Finished, Progress
+from vanner.sources.folder.take import Taker
 
 NOW_S = 1_700_000_000.0
 
@@ -127,6 +129,15 @@ def test_an_archive_changed_between_batches_is_read_from_its_beginning(inbox):
     third = source.poll(second.cursor, NOW_S)
     assert [item.guid for item in second.items + third.items] == ["n5", "n6", "n7"]
     source.close()
+
+
+@pytest.mark.parametrize("name", ["a.txt", "a.jsonl", "a.pdf"])
+def test_nothing_is_taken_of_a_file_that_changes_while_it_is_read(inbox, name):
+    before = stamp_of(drop(inbox, name, b"Gate\nText", 60))
+    drop(inbox, name, b"Gate\nText and more", 30)
+    taker, batch = Taker(inbox, None), Batch(10)
+    assert taker.take(Progress(name=name, stamp=before), batch) is None
+    assert (batch.items, batch.faults) == ([], [])
 
 
 def test_an_archive_removed_between_batches_is_forgotten(inbox):
