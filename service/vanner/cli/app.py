@@ -63,7 +63,8 @@ def main() -> None:
         # The reader of our output has gone: nothing more can be said to it.
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
         sys.exit(1)
-    except Exception as error:  # noqa: BLE001 - the last resort: users never see a traceback
+    except Exception as error:
+        # The last resort: users never see a traceback unless they ask for it.
         if os.environ.get("VANNER_TRACEBACK"):
             raise
         sys.stderr.write(

@@ -21,6 +21,7 @@ from vanner.store.database import Database
 from vanner.store.overview import counts, item_count
 
 _FAULTS_SHOWN = 20
+_FIRST_QUERY = '"SELECT raised_at, headline, items FROM alerts ORDER BY raised_at"'
 
 
 class Faults:
@@ -30,6 +31,7 @@ class Faults:
         self.count = 0
 
     def __call__(self, sentence: str) -> None:
+        """One more fault."""
         self.count += 1
         if self.count <= _FAULTS_SHOWN:
             warn(sentence)
@@ -86,7 +88,7 @@ def _summary(database: Database, end_s: float) -> None:
         f"{told.noted:,} stories noted below the threshold."
     )
     say(f"Everything is in {database.path}")
-    say(f'Try: vanner db query --database {database.path} "SELECT * FROM alerts"')
+    say(f"Try: vanner db query --database {database.path} {_FIRST_QUERY}")
 
 
 def import_command(
@@ -108,9 +110,7 @@ def import_command(
     try:
         faults = Faults()
         with progress("Importing", None) as bar:
-            accepted = teach(
-                database, archive_items(archives, faults), source, now_s, faults, bar
-            )
+            accepted = teach(database, archive_items(archives, faults), source, now_s, faults, bar)
         faults.close()
         when = "at the next pulse" if is_served(database.path) else "when the daemon starts"
         say(
@@ -148,9 +148,7 @@ def rebuild_command(
             def show(done: Progress) -> None:
                 bar(done.items)
 
-            items = rebuild(
-                old, into, plans, pulse_s or plans[0].parameters.pulse_s, show
-            )
+            items = rebuild(old, into, plans, pulse_s or plans[0].parameters.pulse_s, show)
     finally:
         old.close()
     say(f"{items:,} items derived again into {into}")

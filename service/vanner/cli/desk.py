@@ -76,8 +76,12 @@ def _source_line(source: SourceState) -> str:
 
 
 def digest(
-    desk: Annotated[str | None, typer.Argument(help="The desk; may be left out if only one.")] = None,
-    last: Annotated[bool, typer.Option("--last", help="Print the latest one that was made.")] = False,
+    desk: Annotated[
+        str | None, typer.Argument(help="The desk; may be left out if only one.")
+    ] = None,
+    last: Annotated[
+        bool, typer.Option("--last", help="Print the latest one that was made.")
+    ] = False,
     settings: SettingsOption = DEFAULT_SETTINGS,
 ) -> None:
     """Print what a desk's digest would say now; nothing is sent or stored.

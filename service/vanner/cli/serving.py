@@ -33,7 +33,9 @@ def stop_signals() -> Iterator[threading.Event]:
     def on_signal(_number: int, _frame: FrameType | None) -> None:
         stop.set()
 
-    earlier = {number: signal.signal(number, on_signal) for number in (signal.SIGTERM, signal.SIGINT)}
+    earlier = {
+        number: signal.signal(number, on_signal) for number in (signal.SIGTERM, signal.SIGINT)
+    }
     try:
         yield stop
     finally:

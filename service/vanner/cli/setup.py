@@ -16,9 +16,7 @@ from vanner.sources import build_source
 
 
 def init(
-    settings: Annotated[
-        Path, typer.Argument(help="The settings file to make.")
-    ] = DEFAULT_SETTINGS,
+    settings: Annotated[Path, typer.Argument(help="The settings file to make.")] = DEFAULT_SETTINGS,
 ) -> None:
     """Write a commented settings file to start from.
 

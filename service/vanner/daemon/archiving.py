@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable, Iterator, Sequence
-from dataclasses import dataclass
 from itertools import islice
 from pathlib import Path
 
@@ -20,21 +19,14 @@ from vanner.store.database import Database
 from vanner.store.pulses import clock_state
 from vanner.store.source_states import register
 
-PURPOSE = "replay"
+REPLAY, DEMO = "replay", "demo"  # databases that may be made anew without asking
 _BATCH = 1000
 _PULSES_PER_COMMIT = 200
-
-
-@dataclass(slots=True)
-class Intake:
-    """What became of an archive's lines."""
-
-    accepted: Accepted = Accepted()
-    faults: int = 0
+_PULSES_PER_CHECKPOINT = 1_000_000  # a replay that is broken off is begun anew
 
 
 def open_fresh(path: Path) -> Database:
-    """A new database for a replay; one that an earlier replay made is replaced.
+    """A new database for a replay or the demo; one that either made earlier is replaced.
 
     Raises:
         DatabaseError: The file is a service's database or something else: it is left alone.
@@ -44,7 +36,7 @@ def open_fresh(path: Path) -> Database:
         with database.read() as connection:
             state = clock_state(connection)
         database.close()
-        if state is not None and state.purpose != PURPOSE:
+        if state is not None and state.purpose not in (REPLAY, DEMO):
             raise DatabaseError(
                 f"The database {path} serves a daemon and is not replaced; name another file."
             )
@@ -109,7 +101,11 @@ def _taken_in(
 
 
 def replay(
-    database: Database, plans: Sequence[DeskPlan], on_pulse: Callable[[Progress], None]
+    database: Database,
+    plans: Sequence[DeskPlan],
+    on_pulse: Callable[[Progress], None],
+    *,
+    purpose: str = REPLAY,
 ) -> float:
     """Run an engine over everything that a database has received; the end of its last pulse.
 
@@ -122,7 +118,14 @@ def replay(
     if span is None:
         raise InputError("The archive holds no usable item; nothing was replayed.")
     pulse_s = plans[0].parameters.pulse_s
-    engine = Engine(database, plans, pulse_s, purpose=PURPOSE, pulses_per_commit=_PULSES_PER_COMMIT)
+    engine = Engine(
+        database,
+        plans,
+        pulse_s,
+        purpose=purpose,
+        pulses_per_commit=_PULSES_PER_COMMIT,
+        pulses_per_checkpoint=_PULSES_PER_CHECKPOINT,
+    )
     engine.begin(span[0])
     end_s = pulse_end_s(pulse_of(span[1], pulse_s), pulse_s)
     engine.advance(end_s, on_pulse)

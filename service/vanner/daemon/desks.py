@@ -16,7 +16,6 @@ from vanner.store.database import Database
 from vanner.store.pulses import pulses_between
 from vanner.terms import count_terms
 
-
 # Taught items of one pulse are read so many at a time, so that a long archive taught at once
 # is read against what its own beginning taught, and stays in memory.
 TAUGHT_AT_ONCE = 500

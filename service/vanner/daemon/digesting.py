@@ -79,7 +79,9 @@ def make_digest(
     started_s = desk_starts(connection).get(plan.desk, slot.scheduled_s)
     if slot.scheduled_s < started_s or has_slot(connection, plan.desk, schedule, slot.local):
         return
-    content = _content(connection, plan, schedule, slot, started_s)
+    earlier_s = last_slot_s(connection, plan.desk, schedule)
+    from_s = started_s if earlier_s is None else earlier_s
+    content = _content(connection, plan, schedule, slot, from_s)
     composed = compose_digest(content, plan.zone)
     keep_digest(
         connection,
@@ -101,11 +103,10 @@ def make_digest(
         queue(connection, message, withheld=withheld)
 
 
-def _content(connection: Connection, plan: DeskPlan, schedule: str, slot: Slot) -> DigestContent:
+def _content(
+    connection: Connection, plan: DeskPlan, schedule: str, slot: Slot, from_s: float
+) -> DigestContent:
     desk, until_s = plan.desk, slot.scheduled_s
-    from_s = last_slot_s(connection, desk, schedule)
-    if from_s is None:
-        from_s = min(desk_starts(connection).get(desk, until_s), until_s)
     sources = plan.sources if plan.sources is not None else source_names(connection)
     return DigestContent(
         desk=desk,
@@ -128,5 +129,5 @@ def preview_digest(connection: Connection, plan: DeskPlan, now_s: float) -> Comp
     started_s = desk_starts(connection).get(plan.desk, now_s)
     from_s = started_s if made is None else made.scheduled_s
     local = datetime.fromtimestamp(now_s, plan.zone).strftime("%Y-%m-%dT%H:%M")
-    content = _gathered(connection, plan, "", Slot(local, now_s), from_s)
+    content = _content(connection, plan, "", Slot(local, now_s), from_s)
     return compose_digest(content, plan.zone)

@@ -40,9 +40,8 @@ if TYPE_CHECKING:
 
 log = structlog.get_logger()
 
-# A restart derives at most this much again.
-CHECKPOINT_ITEMS = 20_000
-CHECKPOINT_PULSES = 60
+# A restart derives at most so many pulses again.
+PULSES_PER_CHECKPOINT = 60
 
 
 @dataclass(frozen=True, slots=True)
@@ -83,6 +82,7 @@ class Engine:
         purpose: str = "service",
         withhold_mail: bool = False,
         pulses_per_commit: int = 1,
+        pulses_per_checkpoint: int = PULSES_PER_CHECKPOINT,
     ) -> None:
         self.database = database
         self.plans = tuple(plans)
@@ -90,10 +90,11 @@ class Engine:
         self.purpose = purpose
         self.withhold_mail = withhold_mail
         self.pulses_per_commit = pulses_per_commit
+        self.pulses_per_checkpoint = pulses_per_checkpoint
         self.desks: tuple[Desk, ...] = ()
         self.read_s = 0.0
         self._digests = DigestBook(())
-        self._pulses_since = self._items_since = 0
+        self._pulses_since = 0
         self._stale = True
 
     def begin(self, start_s: float) -> None:
@@ -119,7 +120,7 @@ class Engine:
         self.read_s = state.read_s
         self.desks = tuple(self._load(plan, starts[plan.desk]) for plan in self.plans)
         self._digests = DigestBook(self.plans, self.read_s)
-        self._pulses_since = self._items_since = 0
+        self._pulses_since = 0
         self._stale = False
 
     def _load(self, plan: DeskPlan, started_s: float) -> Desk:
@@ -213,8 +214,7 @@ class Engine:
         raised = self._pulse(connection, event)
         mark_read(connection, event.end_s)
         self._pulses_since += 1
-        self._items_since += len(event.items)
-        if self._pulses_since >= CHECKPOINT_PULSES or self._items_since >= CHECKPOINT_ITEMS:
+        if self._pulses_since >= self.pulses_per_checkpoint:
             self._keep_states(connection, event.end_s)
         return Progress(event.end_s, len(event.items), raised)
 
@@ -235,7 +235,7 @@ class Engine:
         self, connection: Connection, plan: DeskPlan, result: PulseResult, end_s: float
     ) -> list[StoryLine]:
         keep_readings(connection, plan.desk, result.readings)
-        ids = keep_stories(connection, result.stories)
+        ids = keep_stories(connection, plan.desk, result.stories, end_s)
         raised = [
             story_line(connection, ids[story.number])
             for story in result.stories
@@ -253,7 +253,7 @@ class Engine:
     def _keep_states(self, connection: Connection, at_s: float) -> None:
         for desk in self.desks:
             keep_checkpoint(connection, desk.plan.desk, desk.checkpoint(at_s))
-        self._pulses_since = self._items_since = 0
+        self._pulses_since = 0
 
     def save(self) -> None:
         """Save the models' states, so that the next start derives nothing again.

@@ -15,6 +15,7 @@ from vanner.store.outbox import handled, take_over
 from vanner.store.pulses import ClockState, clock_state, start_clock
 
 _PULSES_PER_COMMIT = 200
+_PULSES_PER_CHECKPOINT = 1_000_000  # a rebuild that is broken off is begun anew
 
 
 def recorded_plans(database: Database) -> tuple[DeskPlan, ...]:
@@ -70,6 +71,7 @@ def rebuild(
             purpose=state.purpose,
             withhold_mail=True,
             pulses_per_commit=_PULSES_PER_COMMIT,
+            pulses_per_checkpoint=_PULSES_PER_CHECKPOINT,
         )
         with new.write() as target:
             begin_s = first_s // pulse_s * pulse_s

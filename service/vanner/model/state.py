@@ -166,9 +166,7 @@ def _unpack_book(model: DeskModel, facts: dict[str, Any]) -> None:
     for told in facts["stories"]:
         terms = {term: LeadingTerm(*lead) for term, *lead in told.pop("terms")}
         items = dict(told.pop("items"))
-        story = Story(**told, terms=terms, items=items)
-        book.live[story.number] = story
-        book.story_of.update(dict.fromkeys(items, story.number))
+        book.adopt(Story(**told, terms=terms, items=items))
 
 
 def retune(model: DeskModel, parameters: DeskParameters, now_s: float) -> None:

@@ -41,7 +41,15 @@ class LeadingTerm:
 
 @dataclass(slots=True)
 class Story:
-    """A story in the making. `items` maps item ids to the time they were added."""
+    """A story in the making.
+
+    Attributes:
+        bits: The two strongest terms' bits together, at their highest.
+        strongest_bits: The strongest term's bits.
+        need_bits: What an item must match to belong.
+        terms: The leading terms by number.
+        items: Item id -> the time it was added.
+    """
 
     number: int
     noted_s: float
@@ -52,6 +60,8 @@ class Story:
     bits: float = 0.0
     headline_item: int = 0
     headline_score: float = -1.0
+    strongest_bits: float = 0.0
+    need_bits: float = 0.0
     terms: dict[int, LeadingTerm] = field(default_factory=dict)
     items: dict[int, float] = field(default_factory=dict)
 
@@ -69,18 +79,13 @@ class Story:
         self.terms[candidate.term] = LeadingTerm(
             candidate.bits, candidate.seen, candidate.expected, joined_s
         )
-        self.bits = max(self.bits, self.strength())
+        self._rank()
 
-    def strength(self) -> float:
-        """The sum of the two strongest terms' bits."""
-        return sum(self._strongest(2))
-
-    def _strongest(self, number: int) -> list[float]:
-        return sorted((term.bits for term in self.terms.values()), reverse=True)[:number]
-
-    def strongest_bits(self) -> float:
-        """The strongest term's bits."""
-        return self._strongest(1)[0]
+    def _rank(self) -> None:
+        ranked = sorted((term.bits for term in self.terms.values()), reverse=True)
+        self.strongest_bits = ranked[0]
+        self.need_bits = MATCH_FRACTION * sum(ranked[:3])
+        self.bits = max(self.bits, sum(ranked[:2]))
 
     def match(self, own_terms: Mapping[int, float]) -> float:
         """How well an item fits: matched bits, or 0 where it does not.
@@ -88,10 +93,10 @@ class Story:
         It fits when it holds leading terms worth half the bits of the three strongest, and two
         of them where the story has two: one common word must not carry strangers in.
         """
-        shared = [term for term in self.terms if term in own_terms]
-        total = sum(self.terms[term].bits for term in shared)
-        enough = total >= MATCH_FRACTION * sum(self._strongest(3))
-        return total if enough and len(shared) >= min(2, len(self.terms)) else 0.0
+        shared = [lead.bits for term, lead in self.terms.items() if term in own_terms]
+        total = sum(shared)
+        fits = total >= self.need_bits and len(shared) >= min(2, len(self.terms))
+        return total if fits else 0.0
 
     def add_item(self, item_id: int, score: float, now_s: float) -> None:
         """Add an item once; the one with most of the leading terms' bits gives the headline."""
@@ -120,6 +125,28 @@ class StoryBook:
     next_number: int = 1
     live: dict[int, Story] = field(default_factory=dict)
     story_of: dict[int, int] = field(default_factory=dict)
+    by_term: dict[int, set[int]] = field(default_factory=dict)
+
+    def adopt(self, story: Story) -> None:
+        """Let a story live: its terms and items are found from here on."""
+        self.live[story.number] = story
+        self.story_of.update(dict.fromkeys(story.items, story.number))
+        for term in story.terms:
+            self.by_term.setdefault(term, set()).add(story.number)
+
+    def _learn(self, story: Story, candidate: Candidate, now_s: float) -> None:
+        before = set(story.terms)
+        story.learn(candidate, now_s)
+        for term in story.terms.keys() - before:
+            self.by_term.setdefault(term, set()).add(story.number)
+        for term in before - story.terms.keys():
+            self._forget_term(term, story.number)
+
+    def _forget_term(self, term: int, number: int) -> None:
+        numbers = self.by_term[term]
+        numbers.discard(number)
+        if not numbers:
+            del self.by_term[term]
 
     def clear_due(self, now_s: float, due_s: Mapping[int, float]) -> list[Story]:
         """End the stories that have been quiet long enough.
@@ -135,6 +162,8 @@ class StoryBook:
             del self.live[story.number]
             for item_id in story.items:
                 self.story_of.pop(item_id, None)
+            for term in story.terms:
+                self._forget_term(term, story.number)
         return done
 
     def update(
@@ -174,7 +203,7 @@ class StoryBook:
 
     @staticmethod
     def _passes(story: Story, levels: Levels) -> bool:
-        return story.strongest_bits() >= levels.floor_bits and story.bits > levels.ceiling_bits
+        return story.strongest_bits >= levels.floor_bits and story.bits > levels.ceiling_bits
 
     def _place(
         self, item_id: int, terms: Mapping[int, float], now_s: float, changed: dict[int, Story]
@@ -183,7 +212,9 @@ class StoryBook:
         if item_id in self.story_of:
             return
         best, best_score = None, 0.0
-        for story in self.live.values():
+        near = {number for term in terms for number in self.by_term.get(term, ())}
+        for number in sorted(near):
+            story = self.live[number]
             score = story.match(terms)
             if score > best_score:
                 best, best_score = story, score
@@ -211,7 +242,7 @@ class StoryBook:
             number = max(sorted(set(owned)), key=owned.count)
             if 2 * owned.count(number) >= len(candidate.items):
                 story = self.live[number]
-                story.learn(candidate, now_s)
+                self._learn(story, candidate, now_s)
                 changed[number] = story
                 return None
         free = tuple(i for i, owner in zip(candidate.items, owners, strict=True) if owner is None)
@@ -241,7 +272,8 @@ class StoryBook:
             for item_id in first.items:
                 held = [story.terms[t].bits for t in story.terms if t in own_terms[item_id]]
                 self._own(story, item_id, sum(held), now_s)
-            self.live[story.number] = changed[story.number] = story
+            self.adopt(story)
+            changed[story.number] = story
             taken = {member.term for member in members}
             left = [
                 c

@@ -6,7 +6,7 @@ from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from itertools import groupby
 
-from sqlalchemy import Connection, delete, insert, select, update
+from sqlalchemy import Connection, bindparam, delete, insert, select, update
 from sqlalchemy.dialects.sqlite import insert as upsert
 
 from vanner.clock import pulse_end_s, pulse_of
@@ -176,50 +176,82 @@ def _already_read(connection: Connection, desk: str, item_ids: Sequence[int]) ->
     return found
 
 
-def keep_stories(connection: Connection, stories: Sequence[StoryRecord]) -> dict[int, int]:
-    """Write stories as they stand; story number -> story id."""
-    ids = {}
-    for one in stories:
-        values = {
-            "noted_s": one.noted_s,
-            "raised_s": one.raised_s,
-            "last_activity_s": one.last_activity_s,
-            "cleared_s": one.cleared_s,
-            "headline_item_id": one.headline_item_id,
-            "bits": one.bits,
-            "threshold_bits": one.threshold_bits,
-        }
-        key = (story.c.desk == one.desk) & (story.c.number == one.number)
-        story_id = connection.execute(select(story.c.story_id).where(key)).scalar()
-        if story_id is None:
-            result = connection.execute(
-                insert(story).values(desk=one.desk, number=one.number, **values)
-            )
-            story_id = int(result.lastrowid)
-        else:
-            connection.execute(update(story).where(story.c.story_id == story_id).values(**values))
-        _keep_parts(connection, story_id, one)
-        ids[one.number] = story_id
+def keep_stories(
+    connection: Connection, desk: str, stories: Sequence[StoryRecord], end_s: float
+) -> dict[int, int]:
+    """Write the stories that a pulse changed; story number -> story id.
+
+    Args:
+        connection: A write transaction.
+        desk: The desk that they belong to.
+        stories: As they stand after the pulse.
+        end_s: The pulse's end: items that were added at it are new, earlier ones are stored.
+    """
+    if not stories:
+        return {}
+    ids = _story_ids(connection, desk, [one.number for one in stories])
+    new = [one for one in stories if one.number not in ids]
+    if new:
+        connection.execute(insert(story), [_story_row(one) for one in new])
+        ids.update(_story_ids(connection, desk, [one.number for one in new]))
+    known = [_story_row(one) | {"id": ids[one.number]} for one in stories if one not in new]
+    if known:
+        connection.execute(_UPDATE_STORY, known)
+    _keep_parts(connection, [(ids[one.number], one) for one in stories], end_s)
     return ids
 
 
-def _keep_parts(connection: Connection, story_id: int, one: StoryRecord) -> None:
-    connection.execute(delete(story_term).where(story_term.c.story_id == story_id))
-    connection.execute(
-        insert(story_term),
-        [
-            {
-                "story_id": story_id,
-                "term": t.term,
-                "bits": t.bits,
-                "seen": t.seen,
-                "expected": t.expected,
-                "joined_s": t.joined_s,
-            }
-            for t in one.terms
-        ],
+_UPDATE_STORY = (
+    update(story)
+    .where(story.c.story_id == bindparam("id"))
+    .values({name: bindparam(name) for name in story.c.keys() if name != "story_id"})  # noqa: SIM118 - a collection of columns iterates over them, not over names
+)
+_FORGET_TERMS = delete(story_term).where(story_term.c.story_id == bindparam("id"))
+
+
+def _story_row(one: StoryRecord) -> dict[str, object]:
+    return {
+        "desk": one.desk,
+        "number": one.number,
+        "noted_s": one.noted_s,
+        "raised_s": one.raised_s,
+        "last_activity_s": one.last_activity_s,
+        "cleared_s": one.cleared_s,
+        "headline_item_id": one.headline_item_id,
+        "bits": one.bits,
+        "threshold_bits": one.threshold_bits,
+    }
+
+
+def _story_ids(connection: Connection, desk: str, numbers: Sequence[int]) -> dict[int, int]:
+    query = select(story.c.number, story.c.story_id).where(
+        story.c.desk == desk, story.c.number.in_(numbers)
     )
-    connection.execute(
-        upsert(story_item).on_conflict_do_nothing(),
-        [{"story_id": story_id, "item_id": i.item_id, "added_s": i.added_s} for i in one.items],
-    )
+    return {row.number: row.story_id for row in connection.execute(query)}
+
+
+def _keep_parts(
+    connection: Connection, stories: Sequence[tuple[int, StoryRecord]], end_s: float
+) -> None:
+    connection.execute(_FORGET_TERMS, [{"id": story_id} for story_id, _ in stories])
+    terms = [
+        {
+            "story_id": story_id,
+            "term": t.term,
+            "bits": t.bits,
+            "seen": t.seen,
+            "expected": t.expected,
+            "joined_s": t.joined_s,
+        }
+        for story_id, one in stories
+        for t in one.terms
+    ]
+    connection.execute(insert(story_term), terms)
+    items = [
+        {"story_id": story_id, "item_id": i.item_id, "added_s": i.added_s}
+        for story_id, one in stories
+        for i in one.items
+        if i.added_s == end_s
+    ]
+    if items:
+        connection.execute(insert(story_item), items)

@@ -131,3 +131,17 @@ def _items(connection: Connection, story_id: int) -> tuple[tuple[ItemLine, ...],
         for row in reversed(rows)
     ]
     return tuple(lines), count, sources
+
+
+def raised_guids(connection: Connection) -> dict[int, tuple[str, frozenset[str]]]:
+    """Alert id -> (desk, guids of its items), for every alert."""
+    query = (
+        select(story.c.story_id, story.c.desk, item.c.guid)
+        .join(story_item, story_item.c.story_id == story.c.story_id)
+        .join(item, item.c.item_id == story_item.c.item_id)
+        .where(story.c.raised_s.is_not(None))
+    )
+    found: dict[int, tuple[str, set[str]]] = {}
+    for row in connection.execute(query):
+        found.setdefault(row.story_id, (row.desk, set()))[1].add(row.guid)
+    return {key: (desk, frozenset(guids)) for key, (desk, guids) in found.items()}
