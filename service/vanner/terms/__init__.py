@@ -1,1 +1,5 @@
-"""Cuts text into terms."""
+"""Cuts text into terms: finds the words, folds their spellings, counts them."""
+
+from vanner.terms.cutting import Span, count_terms, cut
+
+__all__ = ["Span", "count_terms", "cut"]
