@@ -72,8 +72,11 @@ class DeliveryError(VannerError):
 
     Attributes:
         final: Whether the receiver refused for good, so that trying again is useless.
+        unconfirmed: Whether the receiver may have it all the same; then it is final too, for
+            trying again could hand it over twice.
     """
 
-    def __init__(self, message: str, *, final: bool = False) -> None:
+    def __init__(self, message: str, *, final: bool = False, unconfirmed: bool = False) -> None:
         super().__init__(message)
         self.final = final
+        self.unconfirmed = unconfirmed
