@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import hashlib
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 from vanner.daemon.plan import DeskPlan, pack_plan, unpack_plan
 from vanner.errors import DatabaseError
@@ -27,11 +27,13 @@ class Desk:
 
     Attributes:
         started_s: What was received before is not the desk's.
+        story_ids: Story number -> the database's id, as far as known.
     """
 
     plan: DeskPlan
     model: DeskModel
     started_s: float
+    story_ids: dict[int, int] = field(default_factory=dict)
 
     def checkpoint(self, at_s: float) -> Checkpoint:
         """The model's state after the pulse that ended at `at_s`."""

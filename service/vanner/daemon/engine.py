@@ -6,9 +6,10 @@ order in which they were received; when it is called and how often does not matt
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator, Sequence
+from collections.abc import Callable, Generator, Sequence
 from contextlib import closing
 from dataclasses import dataclass
+from itertools import islice
 from typing import TYPE_CHECKING
 
 import structlog
@@ -54,11 +55,15 @@ class PulseEvent:
 
 @dataclass(frozen=True, slots=True)
 class DigestEvent:
-    """A digest that is due."""
+    """A digest that is due; `end_s` is the end of the last pulse before it."""
 
     plan: DeskPlan
     schedule: str
     slot: Slot
+    end_s: float
+
+
+Events = Generator[PulseEvent | DigestEvent, None, None]
 
 
 @dataclass(frozen=True, slots=True)
@@ -164,32 +169,28 @@ class Engine:
         self.read_s = end_s
 
     def _run(self, end_s: float, on_pulse: Callable[[Progress], None] | None) -> None:
-        more = True
+        more, read_s = True, self.read_s
         with closing(self._events(end_s)) as events:
             while more:
                 shown = []
                 with self.database.write() as connection:
-                    for _ in range(self.pulses_per_commit):
-                        event = next(events, None)
-                        if event is None:
-                            more = False
-                            mark_read(connection, end_s)
-                            break
+                    for event in islice(events, self.pulses_per_commit):
                         shown.append(self._handle(connection, event))
+                        read_s = event.end_s
+                    more = len(shown) == self.pulses_per_commit
+                    mark_read(connection, read_s if more else end_s)
                 for progress in shown:
                     if progress is not None and on_pulse is not None:
                         on_pulse(progress)
 
-    def _events(self, until_s: float) -> Iterator[PulseEvent | DigestEvent]:
+    def _events(self, until_s: float) -> Events:
         """Events in order of time; at equal times pulses, then clearings, then digests."""
         for end_s, items in pulses_between(self.database, self.read_s, until_s, self.pulse_s):
             yield from self._quiet_events(end_s, inclusive=False)
             yield PulseEvent(end_s, tuple(items))
         yield from self._quiet_events(until_s, inclusive=True)
 
-    def _quiet_events(
-        self, limit_s: float, *, inclusive: bool
-    ) -> Iterator[PulseEvent | DigestEvent]:
+    def _quiet_events(self, limit_s: float, *, inclusive: bool) -> Events:
         """Clearings and digests before (or up to) a time; each is handled before the next."""
         while True:
             due = [desk.model.next_clearing_s() for desk in self.desks]
@@ -203,7 +204,7 @@ class Engine:
                 yield PulseEvent(clears_s, ())
             else:
                 self._digests.done(digest)
-                yield DigestEvent(*digest)
+                yield DigestEvent(*digest, pulse_of(slot_s, self.pulse_s) * self.pulse_s)
 
     def _handle(self, connection: Connection, event: PulseEvent | DigestEvent) -> Progress | None:
         if isinstance(event, DigestEvent):
@@ -212,7 +213,6 @@ class Engine:
             )
             return None
         raised = self._pulse(connection, event)
-        mark_read(connection, event.end_s)
         self._pulses_since += 1
         if self._pulses_since >= self.pulses_per_checkpoint:
             self._keep_states(connection, event.end_s)
@@ -227,15 +227,22 @@ class Engine:
             mine = [terms for item, terms in counted if desk.plan.reads(item.source)]
             due_s = desk.model.next_clearing_s()
             if mine or (due_s is not None and due_s <= event.end_s):
+                revised = [one.item_id for one in mine if one.revision > 1]
                 for result in step(desk.model, event.end_s, mine):
-                    raised += self._keep(connection, desk.plan, result, event.end_s)
+                    raised += self._keep(connection, desk, result, revised, event.end_s)
         return tuple(raised)
 
     def _keep(
-        self, connection: Connection, plan: DeskPlan, result: PulseResult, end_s: float
+        self,
+        connection: Connection,
+        desk: Desk,
+        result: PulseResult,
+        revised: Sequence[int],
+        end_s: float,
     ) -> list[StoryLine]:
-        keep_readings(connection, plan.desk, result.readings)
-        ids = keep_stories(connection, plan.desk, result.stories, end_s)
+        plan, ids = desk.plan, desk.story_ids
+        keep_readings(connection, plan.desk, result.readings, revised)
+        keep_stories(connection, plan.desk, result.stories, end_s, ids)
         raised = [
             story_line(connection, ids[story.number])
             for story in result.stories

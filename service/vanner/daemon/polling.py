@@ -63,7 +63,8 @@ class Poller:
         Raises:
             DatabaseError: The database refused; nothing of that poll was kept.
         """
-        accepted, faults = Accepted(), ()
+        accepted = Accepted()
+        faults: tuple[str, ...] = ()
         retry_at_s: float | None = None
         for _ in range(POLLS_IN_A_ROW):
             with self.database.read() as connection:

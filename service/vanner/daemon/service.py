@@ -12,6 +12,7 @@ import threading
 from collections.abc import Callable, Sequence
 from contextlib import suppress
 from datetime import UTC, datetime
+from functools import partial
 
 import structlog
 from apscheduler.executors.pool import ThreadPoolExecutor
@@ -84,7 +85,7 @@ class Service:
         self._at(self._engine.next_end_s(now_s) + _AFTER_CLOSE_S, "pulse", self._pulse)
         self._at(now_s, "post", self._post)
         for poller in self._pollers:
-            self._at(now_s, f"poll {poller.source.name}", lambda p=poller: self._poll(p))
+            self._at(now_s, f"poll {poller.source.name}", partial(self._poll, poller))
         log.info("service_started", sources=len(self._pollers), desks=len(self._engine.plans))
 
     def _at(self, time_s: float, name: str, work: Callable[[], None]) -> None:
@@ -138,7 +139,7 @@ class Service:
                 log.warning("source_stopped", source=poller.source.name)
             else:
                 name = f"poll {poller.source.name}"
-                self._at(next_s, name, lambda: self._poll(poller))
+                self._at(next_s, name, partial(self._poll, poller))
 
     def stop(self) -> None:
         """Finish the pulse that is being committed, save the models' state, end the jobs."""

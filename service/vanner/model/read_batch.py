@@ -20,7 +20,7 @@ from vanner.model.reading import Fit, fit, own_share
 if TYPE_CHECKING:
     from vanner.model.desk import DeskModel, TermItem
 
-_SMALLEST_WIDTH = 8
+_SMALLEST_WIDTH = 32
 _LARGEST_CELLS = 1 << 20  # of one matrix, so that a pulse of long items stays in memory
 PRIOR_WORDS = 5.0  # strength of the prior on each background's weight, in words
 

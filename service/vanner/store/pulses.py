@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Collection, Iterator, Sequence
 from dataclasses import dataclass
 from itertools import groupby
 
@@ -126,17 +126,25 @@ def _fetch(
         return [StoredItem(**row) for row in connection.execute(query).mappings()]
 
 
-def keep_readings(connection: Connection, desk: str, readings: Sequence[Reading]) -> None:
-    """Write readings and topics; a later revision's reading takes the earlier one's place."""
+def keep_readings(
+    connection: Connection, desk: str, readings: Sequence[Reading], revised: Collection[int]
+) -> None:
+    """Write readings and topics.
+
+    Args:
+        connection: A write transaction.
+        desk: The desk that made them.
+        readings: One an item and revision; an item's last one stands.
+        revised: Ids of those items that may have been read before: their earlier reading goes.
+    """
     if not readings:
         return
-    rows = {one.item_id: one for one in readings}  # the last of an item's revisions stands
-    again = _already_read(connection, desk, list(rows))
-    if again:
-        for table in (topic, reading):
-            connection.execute(
-                delete(table).where(table.c.desk == desk, table.c.item_id.in_(again))
-            )
+    rows = {one.item_id: one for one in readings}
+    for table in (topic, reading) if revised else ():
+        connection.execute(
+            delete(table).where(table.c.desk == desk, table.c.item_id == bindparam("id")),
+            [{"id": item_id} for item_id in revised],
+        )
     connection.execute(
         insert(reading),
         [
@@ -167,38 +175,39 @@ def keep_readings(connection: Connection, desk: str, readings: Sequence[Reading]
         )
 
 
-def _already_read(connection: Connection, desk: str, item_ids: Sequence[int]) -> list[int]:
-    found: list[int] = []
-    for start in range(0, len(item_ids), 500):
-        part = item_ids[start : start + 500]
-        query = select(reading.c.item_id).where(reading.c.desk == desk, reading.c.item_id.in_(part))
-        found.extend(connection.execute(query).scalars())
-    return found
-
-
 def keep_stories(
-    connection: Connection, desk: str, stories: Sequence[StoryRecord], end_s: float
-) -> dict[int, int]:
-    """Write the stories that a pulse changed; story number -> story id.
+    connection: Connection,
+    desk: str,
+    stories: Sequence[StoryRecord],
+    end_s: float,
+    ids: dict[int, int],
+) -> None:
+    """Write the stories that a pulse changed.
 
     Args:
         connection: A write transaction.
         desk: The desk that they belong to.
         stories: As they stand after the pulse.
         end_s: The pulse's end: items that were added at it are new, earlier ones are stored.
+        ids: Story number -> story id as far as known; completed here. It must not outlive a
+            transaction that was rolled back.
     """
     if not stories:
-        return {}
-    ids = _story_ids(connection, desk, [one.number for one in stories])
+        return
+    unknown = [one.number for one in stories if one.number not in ids]
+    if unknown:
+        ids.update(_story_ids(connection, desk, unknown))
     new = [one for one in stories if one.number not in ids]
     if new:
         connection.execute(insert(story), [_story_row(one) for one in new])
         ids.update(_story_ids(connection, desk, [one.number for one in new]))
-    known = [_story_row(one) | {"id": ids[one.number]} for one in stories if one not in new]
+    fresh = {one.number for one in new}
+    known = [
+        _story_row(one) | {"id": ids[one.number]} for one in stories if one.number not in fresh
+    ]
     if known:
         connection.execute(_UPDATE_STORY, known)
     _keep_parts(connection, [(ids[one.number], one) for one in stories], end_s)
-    return ids
 
 
 _UPDATE_STORY = (
