@@ -119,7 +119,7 @@ def _character(reference: re.Match[bytes]) -> bytes:
     if code in (9, 10, 13, 32):
         return b" "
     if code in _SPECIAL:
-        return b"&#%d;" % code
+        return reference[0]
     named = 32 < code < 0xD800 or 0xE000 <= code < 0xFFFE or 0x10000 <= code <= 0x10FFFF
     return chr(code if named else 0xFFFD).encode()
 
