@@ -121,7 +121,8 @@ def translated(error: ErrorDetails, raw: Mapping[str, Any]) -> Fault:
 def unknown_key_rule(keys: Keys, raw: Mapping[str, Any]) -> str:
     """What to do about a key that means nothing where it stands."""
     key, known = str(keys[-1]), sorted(_known_keys(keys, raw))
-    homes = [table for table, fields in _TABLES.items() if key in fields]
+    in_secret = "password" in keys[:-1]
+    homes = [table for table, fields in _TABLES.items() if key in fields and not in_secret]
     if homes and keys[0] not in homes:
         home = f"[[{homes[0]}]]" if homes[0] in ENTRIES else f"[{homes[0]}]"
         return f"unknown key here; it belongs below {home}"

@@ -42,12 +42,7 @@ def settings_of(raw: Mapping[str, Any], path: Path) -> Settings:
     Raises:
         SettingsError: As in `load_settings`.
     """
-    listed = {**raw, "service": raw.get("service", {})}
-    faults: list[Fault] = []
-    for section in ENTRIES:
-        if isinstance(listed.get(section), dict):
-            faults.append(Fault((section,), f"must have double brackets: [[{section}]]"))
-            listed[section] = [listed[section]]
+    listed, faults = _with_right_brackets(raw)
     settings: Settings | None = None
     try:
         settings = Settings.model_validate(listed, context={"folder": path.absolute().parent})
@@ -59,6 +54,21 @@ def settings_of(raw: Mapping[str, Any], path: Path) -> Settings:
         lines = [fault.line(listed, path.name) for fault in sorted(faults, key=_order)]
         raise _faulty(path, tuple(dict.fromkeys(lines)))
     return settings
+
+
+def _with_right_brackets(raw: Mapping[str, Any]) -> tuple[dict[str, Any], list[Fault]]:
+    """The file as it was meant, so that wrong brackets hide no fault between them."""
+    listed = {**raw, "service": raw.get("service", {})}
+    faults = []
+    for section in _SECTIONS:
+        found = listed.get(section)
+        if section in ENTRIES and isinstance(found, dict):
+            listed[section] = [found]
+            faults.append(Fault((section,), f"must have double brackets: [[{section}]]"))
+        elif section not in ENTRIES and isinstance(found, list) and len(found) == 1:
+            listed[section] = found[0]
+            faults.append(Fault((section,), f"must have single brackets: [{section}]"))
+    return listed, faults
 
 
 def _order(fault: Fault) -> tuple[int, int]:
@@ -118,7 +128,8 @@ def _told(message: str, text: str) -> str:
     if found is not None:
         place = f"line {found[1]}, column {found[2]}"
     elif message.endswith("(at end of document)"):
-        lines = text.splitlines() or [""]
+        # The last line that holds anything: an empty one after it would show nothing.
+        lines = text.rstrip("\r\n").split("\n")
         place = f"line {len(lines)}, column {len(lines[-1]) + 1}"
     else:
         return "a number has too many digits"
