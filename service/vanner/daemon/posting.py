@@ -105,7 +105,9 @@ class Postman:
         given_up = error.final or now_s - message.created_s > _LONGEST_TRYING_S
         log.warning("mail_failed", key=message.key, final=given_up, reason=str(error))
         if given_up:
-            self._mark(message, "refused", last_error=str(error))
+            # An unconfirmed mail may have arrived: sending it again could make two of it.
+            state = "unconfirmed" if error.unconfirmed else "refused"
+            self._mark(message, state, last_error=str(error))
             return
         with self._database.write() as connection:
             tries = outbox.attempts_of(connection, message.key)
