@@ -73,7 +73,7 @@ def slug(name: str) -> str:
     """
     plain = unicodedata.normalize("NFKD", name).encode("ascii", "ignore").decode().lower()
     safe = re.sub(r"[^a-z0-9]+", "-", plain).strip("-")
-    if safe == name:
+    if safe and safe == name:
         return safe
     mark = hashlib.sha256(name.encode("utf-8", "surrogatepass")).hexdigest()[:6]
     return f"{safe or 'desk'}-{mark}"

@@ -5,6 +5,7 @@ from __future__ import annotations
 import re
 from collections.abc import Sequence
 from datetime import UTC, datetime
+from email.errors import MessageError
 from email.headerregistry import Address
 from email.message import EmailMessage
 from email.policy import SMTP
@@ -74,14 +75,19 @@ def _header_text(text: str) -> str:
 
 
 def _address(text: str) -> Address:
+    local, _, domain = text.rpartition("@")
+    # The library checks an address's form only where all of it is ASCII; letters beyond it
+    # (RFC 6531) may stand wherever an ASCII letter may.
+    plain = re.sub(r"[^\x00-\x7f]", "x", text)
     try:
-        if text != one_line(text):
-            raise ValueError("more than one line")  # noqa: TRY301 - worded below with the others
-        return Address(addr_spec=text)
-    except (ValueError, IndexError) as error:
+        checked = Address(addr_spec=plain)
+    except (MessageError, ValueError, IndexError):
+        checked = None
+    if checked is None or not (local and domain) or text != one_line(text):
         raise DeliveryError(
             f'"{one_line(text)}" is no mail address; correct it in the settings.', final=True
-        ) from error
+        )
+    return checked if plain == text else Address(username=local, domain=domain)
 
 
 def _encodable(text: str) -> str:

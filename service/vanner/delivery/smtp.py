@@ -65,7 +65,7 @@ def _faults_worded(mail: MailSettings) -> Iterator[None]:
     except smtplib.SMTPResponseException as error:
         raise _refusal("turned us away", mail, error.smtp_code, error.smtp_error) from error
     except (smtplib.SMTPException, OSError) as error:
-        reason = error.strerror if isinstance(error, OSError) and error.strerror else str(error)
+        reason = error.strerror or str(error)
         raise DeliveryError(
             f"The mail server {_place(mail)} could not be used "
             f"({one_line(reason).rstrip('.') or type(error).__name__}); "
@@ -106,15 +106,14 @@ def _log_in(server: smtplib.SMTP, mail: MailSettings, password: str | None) -> N
 
 def _name_parties(server: smtplib.SMTP, message: Message, mail: MailSettings) -> tuple[str, ...]:
     """Name sender and recipients; the recipients that were refused, where some were not."""
-    options = ("SMTPUTF8", "BODY=8BITMIME") if needs_utf8(message, mail.sender) else ()
-    try:
-        code, reply = server.mail(mail.sender, options)
-    except smtplib.SMTPNotSupportedError as error:
+    beyond_ascii = needs_utf8(message, mail.sender)
+    if beyond_ascii and not (server.does_esmtp and server.has_extn("smtputf8")):
         raise DeliveryError(
             f"The mail server {_place(mail)} takes no addresses beyond ASCII (RFC 6531); "
             "use plain ones.",
             final=True,
-        ) from error
+        )
+    code, reply = server.mail(mail.sender, ("SMTPUTF8", "BODY=8BITMIME") if beyond_ascii else ())
     if code != 250:
         raise _refusal(f"refused the sender {mail.sender}", mail, code, reply)
     recipients = envelope(message)

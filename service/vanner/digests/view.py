@@ -6,7 +6,7 @@ from dataclasses import dataclass
 from datetime import datetime
 from zoneinfo import ZoneInfo
 
-from vanner.alerts.lines import one_line
+from vanner.alerts.lines import cells, one_line
 from vanner.alerts.views import StoryView, story_view
 from vanner.alerts.wording import amount, counted, full_time, near_time, sql_text
 from vanner.clock import iso_utc
@@ -117,9 +117,12 @@ def _volume_view(volume: SourceVolume, zone: ZoneInfo, due_s: float) -> VolumeVi
 
 def _noted_query(content: DigestContent) -> tuple[str, ...]:
     """The query that lists what the digest counts as noted, in lines short enough for mail."""
+    desk = sql_text(content.desk)
+    # A long name gets a line of its own: SQL does not mind, and the line keeps its width.
+    where = (f"WHERE desk = {desk}",) if cells(desk) <= 60 else ("WHERE desk =", desk)
     return (
         "SELECT noted_at, headline, items, bits FROM noted",
-        f"WHERE desk = {sql_text(content.desk)}",
+        *where,
         f"AND noted_at > '{iso_utc(content.covers_from_s)}'",
         f"AND noted_at <= '{iso_utc(content.covers_until_s)}'",
         "ORDER BY bits DESC;",
