@@ -57,12 +57,14 @@ def slots(cron: str, zone: ZoneInfo, after_s: float, until_s: float) -> list[Slo
         return []
     start = _wall_time(after_s, zone) - _LARGEST_CHANGE
     end = _wall_time(until_s, zone) + _LARGEST_CHANGE
+    # A day more on both sides: right after a change, wall times out of the window's own range
+    # can be due within it.
     by_instant: dict[float, Slot] = {}
     for wall in _wall_times(cron, start, end):
         scheduled_s = wall.replace(tzinfo=zone, fold=0).timestamp()
-        # Wall times that a change left out share their instant with one that exists.
-        exists = _wall_time(scheduled_s, zone) == wall
-        if after_s < scheduled_s <= until_s and (exists or scheduled_s not in by_instant):
+        if after_s < scheduled_s <= until_s:
+            # A wall time that a change left out shares its instant with a later one, which
+            # exists; where the schedule holds both, the later one takes its place here.
             by_instant[scheduled_s] = Slot(wall.strftime("%Y-%m-%dT%H:%M"), scheduled_s)
     return [by_instant[instant_s] for instant_s in sorted(by_instant)]
 

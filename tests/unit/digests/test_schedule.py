@@ -157,6 +157,21 @@ def test_a_leap_day_is_found_years_ahead():
     assert [local for local, _ in found] == ["2028-02-29T00:00", "2032-02-29T00:00"]
 
 
+def test_a_left_out_wall_time_is_found_by_a_window_that_begins_after_the_change():
+    found = between("30 2 * * *", VIENNA, "2026-03-29T01:15", "2026-03-29T01:45")
+    assert found == [("2026-03-29T02:30", "2026-03-29T01:30")]
+
+
+def test_a_repeated_wall_time_is_found_by_a_window_that_ends_in_the_repeated_hour():
+    found = between("30 2 * * *", VIENNA, "2026-10-25T00:20", "2026-10-25T01:10")
+    assert found == [("2026-10-25T02:30", "2026-10-25T00:30")]
+
+
+def test_two_wall_times_that_fall_together_in_spring_are_one_slot_under_the_later():
+    found = between("0 2,3 * * *", VIENNA, "2026-03-29T00:00", "2026-03-29T12:00")
+    assert found == [("2026-03-29T03:00", "2026-03-29T01:00")]
+
+
 def test_a_cron_text_that_cannot_be_read_is_an_error():
     with pytest.raises(ValueError, match="acceptable"):
         slots("61 7 * * *", VIENNA, 0.0, 86400.0)
