@@ -9,6 +9,7 @@ from __future__ import annotations
 import os
 import unicodedata
 from collections.abc import Iterator
+from itertools import chain
 from pathlib import Path
 
 import pytest
@@ -28,15 +29,17 @@ UNSPACED_SCRIPTS = {"Han", "Hiragana", "Katakana", "Thai", "Lao", "Myanmar", "Kh
 
 
 def unicode_file(name: str) -> list[str]:
-    """The lines of a file of the Unicode Character Database without comments."""
+    """The lines of a file of the Unicode Character Database 15.0 without comments."""
     path = Path(os.environ.get("VANNER_TEST_DATA", ".cache/test-data"), "unicode", name)
-    if not path.is_file():
-        reason = f"{path} is absent: run tests/run, which fetches Debian's unicode-data"
+    text = path.read_text(encoding="utf-8") if path.is_file() else ""
+    # What differs from a library of a later version is known for this version only.
+    if f"{path.stem}-15.0." not in text.partition("\n")[0]:
+        reason = f"{path} of Unicode 15.0 is absent: tests/run fetches it on Debian 12"
         if os.environ.get("CI") == "true":
             pytest.fail(reason)
         pytest.skip(reason)
-    lines = path.read_text(encoding="utf-8").splitlines()
-    return [line for line in (raw.partition("#")[0].strip() for raw in lines) if line]
+    lines = (raw.partition("#")[0].strip() for raw in text.splitlines())
+    return [line for line in lines if line]
 
 
 def pieces_of(line: str) -> list[str]:
@@ -70,7 +73,8 @@ def test_folding_a_character_is_nfkc_casefold_but_for_spaces_and_apostrophes() -
     }
     assert len(mapped) > 10_000
     apostrophes = dict.fromkeys(map(ord, "\u2018\u2019\u02bb\u02bc"), "'")
-    for code in range(0x110000):
+    # The planes in between hold no assigned character.
+    for code in chain(range(0x40000), range(0xE0000, 0xE1000)):
         standard = mapped.get(code, chr(code))
         # A letter that this Python's own Unicode data does not know yet cannot be folded by it.
         if standard and unicodedata.category(chr(code)) == "Cn":

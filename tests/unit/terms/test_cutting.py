@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections import Counter
 
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from vanner.terms import Span, count_terms, cut
@@ -30,12 +30,14 @@ def terms(text: str) -> list[str]:
     return [span.term for span in cut(text)]
 
 
+@settings(deadline=None)
 @given(TEXTS)
 def test_each_span_holds_the_word_that_folds_to_its_term(text: str) -> None:
     for span in cut(text):
         assert fold(text[span.start : span.end]) == span.term
 
 
+@settings(deadline=None)
 @given(TEXTS)
 def test_spans_ascend_without_overlap_inside_the_text(text: str) -> None:
     end_before = 0
@@ -44,12 +46,14 @@ def test_spans_ascend_without_overlap_inside_the_text(text: str) -> None:
         end_before = span.end
 
 
+@settings(deadline=None)
 @given(TEXTS, TEXTS)
 def test_counting_equals_counting_the_cut_terms_in_order(title: str, text: str) -> None:
     expected = Counter(terms(title) + terms(text))
     assert list(count_terms(title, text).items()) == list(expected.items())
 
 
+@settings(deadline=None)
 @given(TEXTS)
 def test_breaking_loses_no_character(text: str) -> None:
     pieces = break_text(text)
@@ -62,6 +66,7 @@ def test_breaking_loses_no_character(text: str) -> None:
     )
 
 
+@settings(deadline=None)
 @given(TEXTS)
 def test_a_term_is_short_and_holds_no_space(text: str) -> None:
     for term in terms(text):
