@@ -81,6 +81,7 @@ def test_no_python_at_all_is_told_in_one_sentence(clone: Path, tmp_path: Path) -
     assert "3.11" in result.stderr
 
 
+@pytest.mark.slow
 def test_an_environment_is_kept_until_it_breaks_or_moves_and_then_made_anew(clone: Path) -> None:
     assert setup(clone, "venv_works").returncode == 1
     assert setup(clone, "make_venv; venv_works").returncode == 0
