@@ -15,7 +15,8 @@ class Deadline:
     A read timeout starts anew with every byte, so a server that sends one byte now and then
     could hold a poll for ever. This watches from a timer's thread and shuts the socket down,
     which wakes the reader. Hand `trace` to the request as httpx's "trace" extension: it tells
-    the connection's stream. Name resolution is not covered; the resolver has its own limit.
+    the connection's stream. Connecting and the TLS handshake end by the connection timeout and
+    name resolution by the resolver's own, so these may come on top of `total_s`.
 
     Attributes:
         passed: Whether the time was up before the requests ended.
