@@ -39,9 +39,10 @@ def test_exact_theta_meets_the_conditions_of_optimality(seed, words):
     counts, background = _problem(seed, words)
     theta = exact_theta(counts[None], background[None], SHARE)[0]
     gradient = counts * (1 - SHARE) / (SHARE * background + (1 - SHARE) * theta)
-    multiplier = counts.sum() - SHARE * (
-        counts * background / (SHARE * background + (1 - SHARE) * theta)
-    ).sum()
+    multiplier = (
+        counts.sum()
+        - SHARE * (counts * background / (SHARE * background + (1 - SHARE) * theta)).sum()
+    )
     assert theta.sum() == pytest.approx(1.0, abs=1e-12)
     assert (theta >= 0).all()
     scale = gradient.max()
@@ -64,7 +65,9 @@ def test_exact_theta_is_what_a_general_optimiser_finds(seed):
     exact = exact_theta(counts[None], background[None], SHARE)[0]
     start = np.full(8, 1 / 8)
     found = optimize.minimize(
-        lambda theta: _likelihood(counts, background, start) - _likelihood(counts, background, theta),
+        lambda theta: (
+            _likelihood(counts, background, start) - _likelihood(counts, background, theta)
+        ),
         start,
         jac=lambda theta: -counts * (1 - SHARE) / (SHARE * background + (1 - SHARE) * theta),
         bounds=[(0, 1)] * 8,
@@ -78,15 +81,14 @@ def test_exact_theta_is_what_a_general_optimiser_finds(seed):
     )
     assert found.success
     assert exact == pytest.approx(found.x, abs=1e-4)
-    assert _likelihood(counts, background, exact) >= _likelihood(
-        counts, background, found.x
-    ) - 1e-9
+    assert _likelihood(counts, background, exact) >= _likelihood(counts, background, found.x) - 1e-9
 
 
 def _backgrounds(rng, items, width):
-    return rng.dirichlet(np.full(width + 30, 0.4), size=(items, 2)).transpose(0, 2, 1)[
-        :, :width
-    ] + 1e-8
+    return (
+        rng.dirichlet(np.full(width + 30, 0.4), size=(items, 2)).transpose(0, 2, 1)[:, :width]
+        + 1e-8
+    )
 
 
 @given(seed=st.integers(0, 2**32 - 1))
@@ -115,8 +117,9 @@ def test_fitted_weights_are_where_a_general_optimiser_finds_the_maximum(seed):
         theta = exact_theta(counts, blend[None], SHARE)[0]
         return -(_likelihood(counts[0], blend, theta) + float(prior[0] @ np.log(pi)))
 
-    found = optimize.minimize_scalar(falling, bounds=(1e-6, 1 - 1e-6), method="bounded",
-                                     options={"xatol": 1e-10})
+    found = optimize.minimize_scalar(
+        falling, bounds=(1e-6, 1 - 1e-6), method="bounded", options={"xatol": 1e-10}
+    )
     assert fitted.objective[-1, 0] == pytest.approx(-found.fun, abs=1e-5)
     assert fitted.pi[0, 0] == pytest.approx(found.x, abs=5e-3)
 

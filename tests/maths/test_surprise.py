@@ -54,4 +54,6 @@ def test_a_season_without_items_has_the_overall_rate():
 def test_a_season_with_many_items_has_its_own_rate():
     value = season_rate(np.array([0.001]), np.array([300.0]), 1000.0, 1.0)[0]
     assert value == pytest.approx(301 / 2000)
-    assert season_rate(np.array([0.25]), np.array([1e6]), 2e6, 1.0)[0] == pytest.approx(0.5, rel=1e-4)
+    assert season_rate(np.array([0.25]), np.array([1e6]), 2e6, 1.0)[0] == pytest.approx(
+        0.5, rel=1e-4
+    )
