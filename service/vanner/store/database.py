@@ -7,13 +7,14 @@ have connections of their own that cannot write.
 
 from __future__ import annotations
 
+import sqlite3
 import threading
 from collections.abc import Iterator
 from contextlib import contextmanager
 from pathlib import Path
 from typing import Any
 
-from sqlalchemy import Connection, Engine, create_engine, event
+from sqlalchemy import Connection, Engine, QueuePool, create_engine, event
 
 from vanner.errors import DatabaseError
 from vanner.store.failures import database_errors
@@ -25,18 +26,24 @@ __all__ = ["Connection", "Database"]
 BUSY_TIMEOUT_S = 10.0
 
 
-def _engine(path: Path, *, writable: bool) -> Engine:
-    mode = "rwc" if writable else "ro"
-    url = f"sqlite:///file:{_quoted(path)}?mode={mode}&uri=true"
-    engine = create_engine(
-        url, connect_args={"timeout": BUSY_TIMEOUT_S, "check_same_thread": False}
-    )
+def _engine(path: Path, busy_timeout_s: float, *, writable: bool) -> Engine:
+    uri = f"{path.as_uri()}?mode={'rwc' if writable else 'ro'}"
+
+    def connect() -> sqlite3.Connection:
+        # The driver's own transaction handling is switched off; `begin` below decides.
+        return sqlite3.connect(
+            uri, uri=True, timeout=busy_timeout_s, check_same_thread=False, isolation_level=None
+        )
+
+    # Connections are made here and not from a URL, which would decode the path once more and
+    # so name another file where the path holds a percent sign.
+    engine = create_engine("sqlite://", creator=connect, poolclass=QueuePool)
 
     def on_connect(connection: Any, _record: Any) -> None:  # noqa: ANN401 - the driver's types
-        # The driver's own transaction handling is switched off; `begin` below decides.
-        connection.isolation_level = None
         connection.execute("PRAGMA foreign_keys = ON")
         if writable:
+            # Heeded only before a file's first page is written, which the journal mode does.
+            connection.execute("PRAGMA auto_vacuum = INCREMENTAL")
             connection.execute("PRAGMA journal_mode = WAL")
             connection.execute("PRAGMA synchronous = NORMAL")
         else:
@@ -50,33 +57,45 @@ def _engine(path: Path, *, writable: bool) -> Engine:
     return engine
 
 
-def _quoted(path: Path) -> str:
-    """The path for an SQLite URI: the three characters that mean something there, escaped."""
-    return str(path).replace("%", "%25").replace("?", "%3f").replace("#", "%23")
-
-
 class Database:
-    """A database in use. `path` is where it lies."""
+    """A database in use. `path` is where it lies, absolute."""
 
-    def __init__(self, path: Path) -> None:
+    def __init__(self, path: Path, busy_timeout_s: float = BUSY_TIMEOUT_S) -> None:
         self.path = path
-        self._writer = _engine(path, writable=True)
-        self._reader = _engine(path, writable=False)
+        self.busy_timeout_s = busy_timeout_s
+        self._writer = _engine(path, busy_timeout_s, writable=True)
+        self._reader = _engine(path, busy_timeout_s, writable=False)
         self._lock = threading.RLock()
 
     @classmethod
-    def open(cls, path: Path, *, create: bool = True, migrate: bool = True) -> Database:
+    def open(
+        cls,
+        path: Path,
+        *,
+        create: bool = True,
+        migrate: bool = True,
+        busy_timeout_s: float = BUSY_TIMEOUT_S,
+    ) -> Database:
         """Open a database, making it or bringing it up to date where allowed.
+
+        Args:
+            path: The file.
+            create: Whether to make it where there is none.
+            migrate: Whether to upgrade an older one.
+            busy_timeout_s: How long to wait while another program holds the database.
 
         Raises:
             DatabaseError: It is missing, of another program, damaged, newer than this
                 version, older and not to be migrated, or not writable.
         """
-        path = path.expanduser().absolute()
+        try:
+            path = path.expanduser().absolute()
+        except RuntimeError as error:  # no such user, or one without a home folder
+            raise DatabaseError(f"The database {path} is in no known home; check it.") from error
         new = check_file(path)
         if new and not create:
             raise DatabaseError(f"There is no database {path}; check the name.")
-        database = cls(path)
+        database = cls(path, busy_timeout_s)
         try:
             with database_errors(path):
                 database._prepare(new=new, migrate=migrate)
@@ -87,18 +106,15 @@ class Database:
 
     def _prepare(self, *, new: bool, migrate: bool) -> None:
         revision = None
-        if new:
-            with self._writer.connect() as connection:
-                connection.exec_driver_sql("PRAGMA auto_vacuum = INCREMENTAL")
-        else:
+        if not new:
             with self._reader.connect() as connection:
                 revision = current_revision(connection, self.path)
         if not is_behind(revision):
             return
         if not new and not migrate:
             raise DatabaseError(
-                f"The database {self.path} is of an older version (schema {revision}); "
-                "run `vanner db upgrade` first."
+                f"The database {self.path} is of an older version "
+                f"(schema {revision or 'still empty'}); run `vanner db upgrade` first."
             )
         with self._lock, self._writer.begin() as connection:
             connection.exec_driver_sql(f"PRAGMA application_id = {APPLICATION_ID}")

@@ -13,7 +13,7 @@ from sqlalchemy import Connection, and_, func, insert, select, update
 
 from vanner.clock import DAY_S
 from vanner.records import SourceVolume, StoryLine
-from vanner.store.schema import digest, item, story
+from vanner.store.schema import digest, item, item_revision, story
 from vanner.store.stories import story_lines
 
 USUAL_DAYS = 14.0
@@ -106,8 +106,10 @@ def volumes_between(
 ) -> list[SourceVolume]:
     """Each source's items received in [from_s, until_s) beside its usual number.
 
-    The usual number is its mean over the 14 days before, scaled to the digest's length; it is
-    None for a source whose first item came within the digest's own time.
+    The usual number is its mean over the 14 days before, scaled to the digest's length. It is
+    None for a source that is known for less than that length (or, where that is longer, for
+    less than 14 days): a few minutes tell nothing about a day. Items that only teach are no
+    part of it: an archive is taught at once and says nothing about how much usually comes.
     """
     return [_volume(connection, source, from_s, until_s) for source in sources]
 
@@ -115,17 +117,23 @@ def volumes_between(
 def _volume(connection: Connection, source: str, from_s: float, until_s: float) -> SourceVolume:
     received = item.c.received_s
     before_s = from_s - USUAL_DAYS * DAY_S
+    counts = (received >= before_s) & (received < from_s) & item_revision.c.teaches.is_(False)
     first_s, last_s, now, earlier = connection.execute(
         select(
             func.min(received),
             func.max(received),
             func.coalesce(func.sum(received >= from_s), 0),
-            func.coalesce(func.sum((received >= before_s) & (received < from_s)), 0),
-        ).where(item.c.source == source, received < until_s)
+            func.coalesce(func.sum(counts), 0),
+        )
+        .join(
+            item_revision,
+            (item_revision.c.item_id == item.c.item_id) & (item_revision.c.revision == 1),
+        )
+        .where(item.c.source == source, received < until_s)
     ).one()
     usual = None
-    if first_s is not None and first_s < from_s:
-        covered_s = from_s - max(first_s, before_s)
+    covered_s = 0.0 if first_s is None else from_s - max(first_s, before_s)
+    if covered_s > 0 and covered_s >= min(until_s - from_s, USUAL_DAYS * DAY_S):
         usual = earlier * (until_s - from_s) / covered_s
     quiet = now == 0 and usual is not None and usual >= QUIET_EXPECTED
     return SourceVolume(source, int(now), usual, last_s, quiet)

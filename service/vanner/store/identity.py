@@ -17,8 +17,11 @@ _MAGIC = b"SQLite format 3\x00"
 def check_file(path: Path) -> bool:
     """Look at a database file before it is opened; whether it is new (absent or empty).
 
+    A file that SQLite has made and that never held a table is new too: so it stands while it
+    is being made, and after a crash in the midst of that.
+
     The header's fields are those of the SQLite file format: page size at 16, size in pages
-    at 28, application id at 68.
+    at 28, schema cookie (0 until the first table is made) at 40, application id at 68.
 
     Raises:
         DatabaseError: A folder, an unreadable or truncated file, or another program's.
@@ -26,6 +29,11 @@ def check_file(path: Path) -> bool:
     try:
         if not path.exists():
             return _check_folder(path)
+        if not path.is_file():
+            raise DatabaseError(f"The database {path} is not a regular file; name another.")
+        # Pages that are still in the write-ahead log may be missing from the file. The log is
+        # looked at first: it may be folded into the file at any moment.
+        logged = _holds_pages(path.with_name(path.name + "-wal"))
         with path.open("rb") as file:
             header = file.read(_HEADER_BYTES)
         size = path.stat().st_size
@@ -39,8 +47,7 @@ def check_file(path: Path) -> bool:
         raise DatabaseError(f"The file {path} is no SQLite database; name another file.")
     if len(header) < _HEADER_BYTES:
         raise _truncated(path)
-    _check_header(path, header, size)
-    return False
+    return not logged and _check_header(path, header, size)
 
 
 def _check_folder(path: Path) -> bool:
@@ -51,23 +58,28 @@ def _check_folder(path: Path) -> bool:
     return True
 
 
-def _check_header(path: Path, header: bytes, size: int) -> None:
+def _check_header(path: Path, header: bytes, size: int) -> bool:
+    """Whether the file never held a table; for one whose pages are all in it."""
     page_size = int.from_bytes(header[16:18], "big")
     page_size = 65536 if page_size == 1 else page_size
     changes, pages = struct.unpack(">II", header[24:32])
     (valid_for,) = struct.unpack(">I", header[92:96])
-    # The size in pages counts only where it was written with the last change. Pages that are
-    # still in the write-ahead log may be missing from the file, so that log is looked for.
-    log = path.with_name(path.name + "-wal")
-    if changes == valid_for and size < pages * page_size and not _holds_pages(log):
+    # The size in pages counts only where it was written with the last change.
+    if changes == valid_for and size < pages * page_size:
         raise _truncated(path)
     application = int.from_bytes(header[68:72], "big")
-    if application != APPLICATION_ID and size > 0 and not _holds_pages(log):
+    if application == 0 and header[40:44] == bytes(4):
+        return True
+    if application != APPLICATION_ID:
         raise DatabaseError(f"The database {path} belongs to another program; name another file.")
+    return False
 
 
 def _holds_pages(log: Path) -> bool:
-    return log.exists() and log.stat().st_size > 0
+    try:
+        return log.stat().st_size > 0
+    except FileNotFoundError:
+        return False
 
 
 def _truncated(path: Path) -> DatabaseError:

@@ -13,6 +13,7 @@ from sqlalchemy import Connection, inspect
 
 import vanner
 from vanner.errors import DatabaseError
+from vanner.store.identity import APPLICATION_ID
 
 
 @cache
@@ -41,22 +42,30 @@ def current_revision(connection: Connection, path: Path) -> str | None:
     """The database's schema revision; None for one that holds no tables.
 
     Raises:
-        DatabaseError: The schema is of a newer version, or of another program.
+        DatabaseError: The schema is of a newer version, of another program, or damaged.
     """
-    revision = MigrationContext.configure(connection).get_current_revision()
-    if revision is None:
+    # The header of a file in use may be behind its write-ahead log: what counts is read here.
+    application = connection.exec_driver_sql("PRAGMA application_id").scalar()
+    revisions = MigrationContext.configure(connection).get_current_heads()
+    if not revisions or application != APPLICATION_ID:
         if inspect(connection).get_table_names():
             raise DatabaseError(
                 f"The database {path} belongs to another program; name another file."
             )
         return None
-    if revision not in _known_revisions():
+    newer = sorted(set(revisions) - set(_known_revisions()))
+    if newer:
         raise DatabaseError(
             f"The database {path} was written by a newer version of Vanner "
-            f"(schema {revision}, this version knows up to {_known_revisions()[0]}); "
+            f"(schema {newer[-1]}, this version knows up to {_known_revisions()[0]}); "
             "install that version."
         )
-    return revision
+    if len(revisions) > 1:
+        raise DatabaseError(
+            f"The database {path} says that it is of several versions at once; "
+            "restore a backup made by `vanner db backup`."
+        )
+    return revisions[0]
 
 
 def is_behind(revision: str | None) -> bool:

@@ -76,7 +76,12 @@ def mark_read(connection: Connection, until_s: float) -> None:
 
 
 def pulses_between(
-    database: Database, from_s: float, until_s: float, pulse_s: float
+    database: Database,
+    from_s: float,
+    until_s: float,
+    pulse_s: float,
+    *,
+    rows_a_fetch: int = _ROWS_A_FETCH,
 ) -> Iterator[tuple[float, list[StoredItem]]]:
     """Pulses that hold items received in [from_s, until_s), each with its end, in order.
 
@@ -85,10 +90,10 @@ def pulses_between(
     """
     position = from_s
     while True:
-        rows = _fetch(database, position, until_s, _ROWS_A_FETCH)
+        rows = _fetch(database, position, until_s, rows_a_fetch)
         if not rows:
             return
-        whole = len(rows) < _ROWS_A_FETCH
+        whole = len(rows) < rows_a_fetch
         last = pulse_of(rows[-1].received_s, pulse_s)
         if not whole:
             kept = [one for one in rows if pulse_of(one.received_s, pulse_s) < last]
@@ -255,7 +260,8 @@ def _keep_parts(
         for story_id, one in stories
         for t in one.terms
     ]
-    connection.execute(insert(story_term), terms)
+    if terms:
+        connection.execute(insert(story_term), terms)
     items = [
         {"story_id": story_id, "item_id": i.item_id, "added_s": i.added_s}
         for story_id, one in stories

@@ -12,6 +12,28 @@ from vanner.errors import DatabaseError
 from vanner.store.database import Database
 from vanner.store.failures import database_errors
 
+# What one SELECT needs, and the pragmas that only tell. Opening the database read-only would
+# not be enough: ATTACH and VACUUM INTO make files, and some pragmas reach beyond the database.
+_READING = (
+    sqlite3.SQLITE_SELECT,
+    sqlite3.SQLITE_READ,
+    sqlite3.SQLITE_FUNCTION,
+    sqlite3.SQLITE_RECURSIVE,
+)
+_TELLING = frozenset(
+    {
+        "table_list",
+        "table_info",
+        "table_xinfo",
+        "index_list",
+        "index_info",
+        "index_xinfo",
+        "foreign_key_list",
+        "integrity_check",
+        "quick_check",
+    }
+)
+
 
 @dataclass(frozen=True, slots=True)
 class Result:
@@ -22,11 +44,19 @@ class Result:
 
 
 @contextmanager
-def _read_only(path: Path) -> Iterator[sqlite3.Connection]:
-    uri = f"{path.as_uri()}?mode=ro"
-    with database_errors(path), closing(sqlite3.connect(uri, uri=True, timeout=10)) as connection:
+def _read_only(database: Database) -> Iterator[sqlite3.Connection]:
+    uri = f"{database.path.as_uri()}?mode=ro"
+    with (
+        database_errors(database.path),
+        closing(sqlite3.connect(uri, uri=True, timeout=database.busy_timeout_s)) as connection,
+    ):
         connection.execute("PRAGMA query_only = ON")
         yield connection
+
+
+def _authorize(action: int, name: str | None, *_: str | None) -> int:
+    telling = action == sqlite3.SQLITE_PRAGMA and name is not None and name.lower() in _TELLING
+    return sqlite3.SQLITE_OK if telling or action in _READING else sqlite3.SQLITE_DENY
 
 
 @contextmanager
@@ -40,17 +70,29 @@ def run_query(database: Database, sql: str) -> Iterator[Result]:
         DatabaseError: The statement is wrong or would write.
     """
     try:
-        with _read_only(database.path) as connection:
+        with _read_only(database) as connection:
+            connection.set_authorizer(_authorize)
             cursor = connection.execute(sql)
             columns = tuple(column[0] for column in cursor.description or ())
             yield Result(columns, iter(cursor))
+    except UnicodeEncodeError as error:
+        raise DatabaseError("The query cannot be run: it is not valid Unicode text.") from error
     except sqlite3.Warning as error:
-        raise DatabaseError(f"The query cannot be run: {error}; give one SELECT.") from error
+        raise DatabaseError(_refusal(error)) from error
     except DatabaseError as error:
         cause = error.__cause__
-        if isinstance(cause, sqlite3.ProgrammingError | sqlite3.OperationalError):
-            raise DatabaseError(f"The query cannot be run: {cause}.") from cause
+        code = getattr(cause, "sqlite_errorcode", None)
+        if code == sqlite3.SQLITE_AUTH:
+            raise DatabaseError(
+                "The query cannot be run: it does more than read; give one SELECT."
+            ) from cause
+        if code in (None, sqlite3.SQLITE_ERROR) and isinstance(cause, sqlite3.Error):
+            raise DatabaseError(_refusal(cause)) from cause
         raise
+
+
+def _refusal(error: Exception) -> str:
+    return f"The query cannot be run: {str(error).rstrip('.')}; give one SELECT."
 
 
 def back_up(database: Database, target: Path) -> int:
@@ -64,7 +106,7 @@ def back_up(database: Database, target: Path) -> int:
     part = target.with_name(target.name + ".part")
     try:
         with (
-            _read_only(database.path) as source,
+            _read_only(database) as source,
             database_errors(part),
             closing(sqlite3.connect(part)) as copy,
         ):
