@@ -80,7 +80,7 @@ class Mailbox:
         self.ids: list[str] = []
         self.port = 0
 
-    async def handle_DATA(self, server, session, envelope):  # noqa: N802 - aiosmtpd's name
+    async def handle_DATA(self, _server, _session, envelope):  # noqa: N802 - aiosmtpd's name
         self.ids.append(message_from_bytes(envelope.content)["Message-ID"])
         return "250 OK"
 

@@ -74,7 +74,7 @@ def test_exact_theta_is_what_a_general_optimiser_finds(seed):
         constraints={
             "type": "eq",
             "fun": lambda theta: theta.sum() - 1,
-            "jac": lambda theta: np.ones_like(theta),
+            "jac": np.ones_like,
         },
         method="SLSQP",
         options={"ftol": 1e-12, "maxiter": 1000},

@@ -1,24 +1,39 @@
-"""replay, import, rebuild: commands over archives and over what was received."""
+"""replay, import: commands over archives."""
 
 from __future__ import annotations
 
+from collections.abc import Iterator, Sequence
+from dataclasses import replace
 from pathlib import Path
 from typing import Annotated
 from zoneinfo import ZoneInfo, ZoneInfoNotFoundError
 
 import typer
 
-from vanner.cli.console import DEFAULT_SETTINGS, SettingsOption, progress, say, set_up_log, warn
+from vanner.cli.console import (
+    DEFAULT_SETTINGS,
+    SettingsOption,
+    counted,
+    progress,
+    say,
+    shell_word,
+    warn,
+)
+from vanner.cli.log import set_up_log
 from vanner.clock import iso_utc, now_s
 from vanner.daemon.archiving import accept_archive, archive_items, open_fresh, replay, teach
-from vanner.daemon.engine import Progress
 from vanner.daemon.lock import is_served
-from vanner.daemon.plan import DeskPlan, plans_from, replay_plan
-from vanner.daemon.rebuilding import rebuild, recorded_plans
+from vanner.daemon.plan import replay_plan
 from vanner.errors import SettingsError
+from vanner.records import RawItem
 from vanner.settings import load_settings
+from vanner.sources.archive import open_archive
 from vanner.store.database import Database
 from vanner.store.overview import counts, item_count
+
+ArchivesArgument = Annotated[
+    list[Path], typer.Argument(metavar="ARCHIVE...", help="JSON Lines, plain or gzip.")
+]
 
 _FAULTS_SHOWN = 20
 _FIRST_QUERY = '"SELECT raised_at, headline, items FROM alerts ORDER BY raised_at"'
@@ -37,9 +52,11 @@ class Faults:
             warn(sentence)
 
     def close(self) -> None:
-        """Tell how many were not shown."""
+        """Tell how many there were, and that not all were shown."""
         if self.count > _FAULTS_SHOWN:
-            warn(f"... and {self.count - _FAULTS_SHOWN:,} more lines left out.")
+            warn(f"... and {self.count - _FAULTS_SHOWN:,} more.")
+        if self.count:
+            warn(f"{counted(self.count, 'entry', 'entries')} left out.")
 
 
 def _zone(name: str) -> str:
@@ -51,28 +68,51 @@ def _zone(name: str) -> str:
         ) from error
 
 
+def _look_for(archives: Sequence[Path]) -> None:
+    """Raise InputError for an archive that cannot be opened before anything is changed."""
+    for path in archives:
+        # What comes through a pipe can be opened only once.
+        if not path.is_fifo() and not path.is_char_device():
+            open_archive(path).close()
+
+
+def _source_of(archive: Path) -> str:
+    """A source's name from an archive's: what stands before the first dot."""
+    name = archive.name.split(".")[0] or "archive"
+    return name.encode("utf-8", "replace").decode()[:64]
+
+
 def replay_command(
-    archives: Annotated[list[Path], typer.Argument(help="Archives: JSON Lines, plain or gzip.")],
-    database: Annotated[Path, typer.Option("--database", "-d", help="The database to make.")],
+    archives: ArchivesArgument,
+    database: Annotated[
+        Path, typer.Option("--database", "-d", metavar="FILE", help="The database to make.")
+    ],
     alerts_per_day: Annotated[
-        float, typer.Option("--alerts-per-day", "-n", help="The desk's budget.", min=0.001)
+        float,
+        typer.Option(
+            "--alerts-per-day", "-n", metavar="NUMBER", help="The desk's budget.", min=0.001
+        ),
     ] = 5.0,
-    timezone: Annotated[str, typer.Option(help="Time zone of hours and weekdays.")] = "UTC",
+    timezone: Annotated[
+        str, typer.Option(metavar="ZONE", help="Time zone of hours and weekdays.")
+    ] = "UTC",
 ) -> None:
-    """Run an archive through the engine in its own time, into a database of its own.
+    """Run archives through the engine into a database of their own.
 
-    One desk named "replay" reads every source. An earlier replay's database is replaced.
+    The time is that of the archives. One desk named "replay" reads every source; items that
+    name none have the first archive's name for one. An earlier replay's database is replaced.
 
-    Example: vanner replay last-month.jsonl.gz --database try.db --alerts-per-day 5
+    Example: vanner replay last-month.jsonl.gz --database try.db
     """
     set_up_log("text", quiet=True)
     plan = replay_plan(alerts_per_day, _zone(timezone), 60.0)
+    _look_for(archives)
     target = open_fresh(database)
     try:
         faults = Faults()
         with progress("Taking in", None) as bar:
-            source = archives[0].name.split(".")[0]
-            accept_archive(target, archive_items(archives, faults), source, faults, bar)
+            items = archive_items(archives, faults)
+            accept_archive(target, items, _source_of(archives[0]), faults, bar)
         faults.close()
         with progress("Reading", item_count(target)) as bar:
             end_s = replay(target, (plan,), lambda done: bar(done.items))
@@ -84,21 +124,29 @@ def replay_command(
 def _summary(database: Database, end_s: float) -> None:
     told = counts(database)
     say(
-        f"{told.items:,} items until {iso_utc(end_s)}: {told.alerts:,} alerts, "
-        f"{told.noted:,} stories noted below the threshold."
+        f"{counted(told.items, 'item')} until {iso_utc(end_s)}: {counted(told.alerts, 'alert')}, "
+        f"{counted(told.noted, 'story', 'stories')} noted below the threshold."
     )
     say(f"Everything is in {database.path}")
-    say(f"Try: vanner db query --database {database.path} {_FIRST_QUERY}")
+    say(f"Try: vanner db query --database {shell_word(database.path)} {_FIRST_QUERY}")
+
+
+def _without_source(raw_items: Iterator[RawItem]) -> Iterator[RawItem]:
+    return (replace(raw, source=None) for raw in raw_items)
 
 
 def import_command(
-    archives: Annotated[list[Path], typer.Argument(help="Archives: JSON Lines, plain or gzip.")],
-    source: Annotated[str, typer.Option(help="The source of the settings that they belong to.")],
+    archives: ArchivesArgument,
+    source: Annotated[
+        str,
+        typer.Option(metavar="NAME", help="The source of the settings that the items belong to."),
+    ],
     settings: SettingsOption = DEFAULT_SETTINGS,
 ) -> None:
-    """Teach the desks that read a source from its past, without raising anything.
+    """Teach the desks of a source from its past; nothing is raised.
 
-    A running daemon takes the items in at its next pulse; otherwise the next one to start.
+    Every item counts as that source's, whatever source the archive names. A running daemon
+    takes the items in at its next pulse; otherwise the next one to start.
 
     Example: vanner import harbour-2025.jsonl.gz --source harbour
     """
@@ -106,65 +154,26 @@ def import_command(
     if source not in {one.name for one in told.source}:
         names = ", ".join(one.name for one in told.source)
         raise SettingsError(f'There is no source "{source}" in {settings}; there are: {names}.')
+    set_up_log("text", quiet=True)
+    _look_for(archives)
     database = Database.open(told.database_path)
     try:
         faults = Faults()
         with progress("Importing", None) as bar:
-            accepted = teach(database, archive_items(archives, faults), source, now_s, faults, bar)
+            items = _without_source(archive_items(archives, faults))
+            accepted = teach(database, items, source, now_s, faults, bar)
         faults.close()
         when = "at the next pulse" if is_served(database.path) else "when the daemon starts"
         say(
-            f"{accepted.new:,} items to learn from, {accepted.revised:,} revisions, "
-            f"{accepted.known:,} known already; they are read {when}."
+            f"{counted(accepted.new, 'item')} to learn from, "
+            f"{counted(accepted.revised, 'revision')}, {accepted.known:,} known already; "
+            f"they are read {when}."
         )
     finally:
         database.close()
-
-
-def rebuild_command(
-    into: Annotated[Path, typer.Option(help="The new database; it must not exist.")],
-    settings: SettingsOption = DEFAULT_SETTINGS,
-    database: Annotated[
-        Path | None,
-        typer.Option("--database", "-d", help="The database to derive from; else the settings'."),
-    ] = None,
-) -> None:
-    """Derive every result again from the stored items, into a new database.
-
-    Uses today's settings; without a settings file, a database that is named uses those that
-    its desks followed last. The old database is only read.
-
-    Example: vanner rebuild --into again.db
-    """
-    set_up_log("text", quiet=True)
-    plans, pulse_s, path = _rebuild_inputs(settings, database)
-    old = Database.open(path, create=False, migrate=False)
-    try:
-        plans = plans or recorded_plans(old)
-        if not plans:
-            raise SettingsError(f"The database {path} records no desk; name a settings file.")
-        with progress("Rebuilding", item_count(old)) as bar:
-
-            def show(done: Progress) -> None:
-                bar(done.items)
-
-            items = rebuild(old, into, plans, pulse_s or plans[0].parameters.pulse_s, show)
-    finally:
-        old.close()
-    say(f"{items:,} items derived again into {into}")
-
-
-def _rebuild_inputs(
-    settings: Path, database: Path | None
-) -> tuple[tuple[DeskPlan, ...], float | None, Path]:
-    if database is not None and not settings.exists():
-        return (), None, database
-    told = load_settings(settings)
-    return plans_from(told), told.service.pulse, database or told.database_path
 
 
 def add_to(app: typer.Typer) -> None:
     """Add these commands."""
     app.command("replay")(replay_command)
     app.command("import")(import_command)
-    app.command("rebuild")(rebuild_command)

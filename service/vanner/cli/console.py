@@ -2,30 +2,30 @@
 
 from __future__ import annotations
 
+import shlex
 import sys
-from collections.abc import Iterator
+import unicodedata
+from collections.abc import Iterator, Sequence
 from contextlib import contextmanager
 from pathlib import Path
 from typing import Annotated, Protocol
 
-import structlog
 import typer
+from rich.cells import cell_len
 from rich.console import Console
-from rich.progress import (
-    BarColumn,
-    MofNCompleteColumn,
-    Progress,
-    TextColumn,
-    TimeRemainingColumn,
-)
+from rich.progress import BarColumn, Progress, Task, TextColumn, TimeRemainingColumn
+from rich.text import Text
 
 SettingsOption = Annotated[
     Path,
-    typer.Option("--settings", "-s", help="The settings file.", envvar="VANNER_SETTINGS"),
+    typer.Option(
+        "--settings", "-s", metavar="FILE", help="The settings file.", envvar="VANNER_SETTINGS"
+    ),
 ]
 DEFAULT_SETTINGS = Path("vanner.toml")
 
 _PLAIN_STEP = 0.1  # a plain line each tenth, where there is no terminal to draw on
+_PLAIN_STEP_ITEMS = 10_000  # and each so many, where the whole number is not known
 
 
 def say(text: str = "") -> None:
@@ -40,11 +40,51 @@ def warn(text: str) -> None:
     sys.stderr.flush()
 
 
+def counted(number: int, one: str, more: str | None = None) -> str:
+    """A number with its noun: "1 alert", "2,000 alerts"; `more` is an irregular plural."""
+    return f"{number:,} {one if number == 1 else more or one + 's'}"
+
+
+def shell_word(path: Path) -> str:
+    """A path as it can be pasted into a shell."""
+    return shlex.quote(str(path))
+
+
+def printable(text: str) -> str:
+    """The text on one line, without characters that a terminal would obey."""
+    return "".join(" " if unicodedata.category(one) in ("Cc", "Zl", "Zp") else one for one in text)
+
+
+def aligned(rows: Sequence[Sequence[str]], right: frozenset[int] = frozenset()) -> Iterator[str]:
+    """Rows as lines in columns, two blanks apart, each column as wide as its widest cell.
+
+    Args:
+        rows: As many cells in each.
+        right: Places of the columns that are aligned to the right, from 0.
+    """
+    widths = [max(map(cell_len, column)) for column in zip(*rows, strict=True)]
+    for row in rows:
+        cells = []
+        for place, (cell, width) in enumerate(zip(row, widths, strict=True)):
+            blanks = " " * (width - cell_len(cell))
+            cells.append(blanks + cell if place in right else cell + blanks)
+        yield "  ".join(cells).rstrip()
+
+
 class Bar(Protocol):
     """How far a piece of work has come."""
 
     def __call__(self, done: int) -> None:
         """So many more are done."""
+
+
+class _CountColumn(TextColumn):
+    def __init__(self) -> None:
+        super().__init__("")
+
+    def render(self, task: Task) -> Text:
+        whole = f" of {task.total:,.0f}" if task.total is not None else ""
+        return Text(f"{task.completed:,.0f}{whole}")
 
 
 @contextmanager
@@ -56,54 +96,46 @@ def progress(title: str, total: int | None) -> Iterator[Bar]:
         total: How many there are, or None where that is not known.
     """
     console = Console(stderr=True)
-    if not console.is_terminal:
-        yield _plain(title, total)
+    # Asked of the stream itself: FORCE_COLOR makes the library draw into files, too.
+    if not sys.stderr.isatty() or console.is_dumb_terminal:
+        plain = PlainProgress(title, total)
+        yield plain
+        plain.close()
         return
     columns = (
-        TextColumn("{task.description}"),
+        TextColumn("{task.description:<10}"),
         BarColumn(),
-        MofNCompleteColumn(),
+        _CountColumn(),
         TimeRemainingColumn(),
     )
     with Progress(*columns, console=console) as bar:
         task = bar.add_task(title, total=total)
         yield lambda done: bar.update(task, advance=done)
+        # What had no known end has reached it now: the bar stands full.
+        bar.update(task, total=bar.tasks[task].completed)
 
 
-def _plain(title: str, total: int | None) -> Bar:
-    step = max(int(total * _PLAIN_STEP), 1) if total else 10_000
-    count, told = 0, 0
+class PlainProgress:
+    """Progress in lines, for log files and pipes."""
 
-    def more(done: int) -> None:
-        nonlocal count, told
-        count += done
-        if count >= told + step or (count == total and told != total):
-            told = count
-            warn(f"{title}: {count:,}" + (f" of {total:,}" if total else ""))
+    def __init__(self, title: str, total: int | None) -> None:
+        self._title = title
+        self._total = total
+        self._step = max(int(total * _PLAIN_STEP), 1) if total else _PLAIN_STEP_ITEMS
+        self._count = self._told = 0
 
-    return more
+    def __call__(self, done: int) -> None:
+        """So many more are done."""
+        self._count += done
+        if self._count >= self._told + self._step:
+            self._tell()
 
+    def close(self) -> None:
+        """The work is done: tell the whole number, unless it stands there already."""
+        if self._count > self._told:
+            self._tell()
 
-def set_up_log(form: str, *, quiet: bool = False) -> None:
-    """Send log events to standard error as text or JSON lines.
-
-    Args:
-        form: "text" or "json".
-        quiet: Leave out what is no warning.
-    """
-    renderer = (
-        structlog.processors.JSONRenderer()
-        if form == "json"
-        else structlog.dev.ConsoleRenderer(colors=sys.stderr.isatty(), pad_event_to=0)
-    )
-    structlog.configure(
-        processors=[
-            structlog.processors.add_log_level,
-            structlog.processors.TimeStamper(fmt="iso", utc=True),
-            structlog.processors.format_exc_info,
-            renderer,
-        ],
-        wrapper_class=structlog.make_filtering_bound_logger(30 if quiet else 20),
-        logger_factory=structlog.PrintLoggerFactory(sys.stderr),
-        cache_logger_on_first_use=False,
-    )
+    def _tell(self) -> None:
+        self._told = self._count
+        whole = f" of {self._total:,}" if self._total else ""
+        warn(f"{self._title}: {self._count:,}{whole}")
