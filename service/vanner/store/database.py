@@ -42,8 +42,9 @@ def _engine(path: Path, busy_timeout_s: float, *, writable: bool) -> Engine:
     def on_connect(connection: Any, _record: Any) -> None:  # noqa: ANN401 - the driver's types
         connection.execute("PRAGMA foreign_keys = ON")
         if writable:
-            # Heeded only before a file's first page is written, which the journal mode does.
-            connection.execute("PRAGMA auto_vacuum = INCREMENTAL")
+            if connection.execute("PRAGMA page_count").fetchone() == (0,):
+                # Heeded only before the first page is written, which the journal mode does.
+                connection.execute("PRAGMA auto_vacuum = INCREMENTAL")
             connection.execute("PRAGMA journal_mode = WAL")
             connection.execute("PRAGMA synchronous = NORMAL")
         else:
