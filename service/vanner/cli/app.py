@@ -10,7 +10,7 @@ import io
 import os
 import signal
 import sys
-from typing import Annotated
+from typing import Annotated, Protocol, runtime_checkable
 
 import typer
 
@@ -58,6 +58,16 @@ def _options(
         sys.stdout.write(context.get_help() + "\n")
 
 
+@runtime_checkable
+class _ArgumentsError(Protocol):
+    """What the parser raises for wrong arguments: its class moved between releases of Typer."""
+
+    exit_code: int
+
+    def format_message(self) -> str:
+        """What is wrong."""
+
+
 def run_app() -> None:
     """Run the command of the arguments; every error becomes one sentence and an exit status."""
     for stream in (sys.stdout, sys.stderr):
@@ -77,7 +87,7 @@ def run_app() -> None:
         # The last resort: users never see a traceback unless they ask for it.
         if os.environ.get("VANNER_TRACEBACK"):
             raise
-        status = _usage(error) if callable(getattr(error, "format_message", None)) else _bug(error)
+        status = _usage(error) if isinstance(error, _ArgumentsError) else _bug(error)
     if status == 130:
         # A second Ctrl-C must not break into the ending.
         signal.signal(signal.SIGINT, signal.SIG_IGN)
@@ -94,15 +104,12 @@ def _told(error: VannerError) -> int:
     return error.exit_status
 
 
-def _usage(error: Exception) -> int:
-    """Wrong arguments. The parser's error class lies elsewhere in different releases of Typer,
-    hence no `except` clause of its own.
-    """
-    told: str = error.format_message()  # type: ignore[attr-defined] - asked for by the caller
+def _usage(error: _ArgumentsError) -> int:
     context = getattr(error, "ctx", None)
     command = context.command_path if context is not None else "vanner"
-    warn(f"vanner: {' '.join(told.split()).rstrip('.')}; see: {command} --help")
-    return int(getattr(error, "exit_code", 2))
+    told = " ".join(error.format_message().split()).rstrip(".")
+    warn(f"vanner: {told}; see: {command} --help")
+    return error.exit_code
 
 
 def _bug(error: Exception) -> int:

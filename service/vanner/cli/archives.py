@@ -32,7 +32,7 @@ from vanner.store.database import Database
 from vanner.store.overview import counts, item_count
 
 ArchivesArgument = Annotated[
-    list[Path], typer.Argument(metavar="ARCHIVE...", help="JSON Lines, plain or gzip.")
+    list[Path], typer.Argument(metavar="ARCHIVE", help="JSON Lines, plain or gzip.")
 ]
 
 _FAULTS_SHOWN = 20

@@ -17,7 +17,7 @@ from vanner.store.query import back_up, run_query
 
 app = typer.Typer(
     help="Query, back up and upgrade the database.\n\n"
-    "Example: vanner db query --format csv \"SELECT * FROM alerts\"",
+    'Example: vanner db query --format csv "SELECT * FROM alerts"',
     invoke_without_command=True,
     rich_markup_mode=None,
 )

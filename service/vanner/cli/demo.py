@@ -7,8 +7,9 @@ from typing import Annotated
 
 import typer
 
-from vanner.cli.console import progress, say, set_up_log, warn
-from vanner.cli.serving import stop_signals
+from vanner.cli.console import aligned, counted, progress, say, shell_word
+from vanner.cli.interrupting import stop_signals
+from vanner.cli.log import set_up_log
 from vanner.clock import iso_utc, now_s
 from vanner.daemon.archiving import open_fresh
 from vanner.daemon.demonstration import (
@@ -37,12 +38,20 @@ class DemoFailedError(VannerError):
 
 def demo(
     database: Annotated[
-        Path, typer.Option("--database", "-d", help="The database to make.")
+        Path, typer.Option("--database", "-d", metavar="FILE", help="The database to make.")
     ] = Path("vanner-demo.db"),
-    seconds: Annotated[float, typer.Option(help="Length of the live part.", min=10, max=600)] = 60,
-    random_state: Annotated[int, typer.Option(help="Another number makes other texts.")] = 1,
+    seconds: Annotated[
+        float,
+        typer.Option(metavar="NUMBER", help="Length of the live part in seconds.", min=10, max=600),
+    ] = 60,
+    random_state: Annotated[
+        int, typer.Option(metavar="NUMBER", help="Another number makes other texts.")
+    ] = 1,
 ) -> None:
-    """Show what Vanner does on an invented port town's newsroom and operations room.
+    """Show an invented port town: two weeks, then a live minute.
+
+    The town has a newsroom and an operations room. Stories are planted in the text of both,
+    and the end tells which of them were raised. An earlier demo's database is replaced.
 
     Example: vanner demo --seconds 30
     """
@@ -56,16 +65,23 @@ def demo(
         with progress("Reading", item_count(target)) as bar:
             replay_archive(target, lambda done: bar(done.items))
         told = counts(target)
-        say(f"{told.items:,} items read: {told.alerts} alerts, {told.noted} stories only noted.")
+        say(
+            f"{counted(told.items, 'item')} read: {counted(told.alerts, 'alert')}, "
+            f"{counted(told.noted, 'story', 'stories')} only noted."
+        )
         say(f"\nNow live for {seconds:g} seconds; alerts as they are raised:")
         with stop_signals() as stop:
             live_s = run_live(target, seconds, random_state, now_s, stop, _show)
             interrupted = stop.is_set()
-        if interrupted:
-            warn("Interrupted: what was read until now is below.")
-        _conclude(target, outcomes(target, archive_s, live_s, seconds, random_state))
+        missed = _conclude(target, outcomes(target, archive_s, live_s, seconds, random_state))
+        _offer(target)
     finally:
         target.close()
+    if interrupted:
+        raise KeyboardInterrupt
+    if missed:
+        stories = counted(missed, "planted story", "planted stories")
+        raise DemoFailedError(f"Not raised: {stories}; see the lines marked MISSED.")
 
 
 def _show(progress_made: Progress) -> None:
@@ -74,26 +90,32 @@ def _show(progress_made: Progress) -> None:
         say(f"  {iso_utc(progress_made.end_s)}  [{alert.desk}] {alert.headline}  ({terms})")
 
 
-def _conclude(database: Database, found: list[Outcome]) -> None:
-    missed = [one.story for one in found if one.alert is None]
+def _conclude(database: Database, found: list[Outcome]) -> int:
+    """Tell what became of the planted stories; how many were not raised."""
     say("\nThe planted stories:")
-    for one in found:
-        if one.alert is None or one.alert.raised_s is None:
-            say(f"  MISSED  {one.story.name} [{one.story.desk}]")
-            continue
-        say(
-            f"  raised {iso_utc(one.alert.raised_s)}  {one.story.name} [{one.story.desk}], "
-            f"{one.alert.item_count} items of {one.alert.source_count} sources"
-        )
-    total = counts(database).alerts
+    for line in aligned([_row(one) for one in found]):
+        say(f"  {line}")
+    missed = sum(one.alert is None for one in found)
     say(
-        f"{len(found) - len(missed)} of {len(found)} planted stories raised, {total} alerts in all."
+        f"{len(found) - missed} of {len(found)} planted stories raised, "
+        f"{counted(counts(database).alerts, 'alert')} in all."
     )
+    return missed
+
+
+def _row(one: Outcome) -> tuple[str, ...]:
+    if one.alert is None or one.alert.raised_s is None:
+        return "MISSED", "", one.story.desk, one.story.name, ""
+    support = (
+        f"{counted(one.alert.item_count, 'item')} of {counted(one.alert.source_count, 'source')}"
+    )
+    return "raised", iso_utc(one.alert.raised_s), one.story.desk, one.story.name, support
+
+
+def _offer(database: Database) -> None:
     say("\nEach is a lead, not a fact. Everything is in the database; try:")
     for sql in _QUERIES:
-        say(f'  vanner db query --database {database.path} "{sql}"')
-    if missed:
-        raise DemoFailedError(f"{len(missed)} planted stories were not raised; see above.")
+        say(f'  vanner db query --database {shell_word(database.path)} "{sql}"')
 
 
 def add_to(app: typer.Typer) -> None:

@@ -4,16 +4,13 @@ from __future__ import annotations
 
 import os
 import random
-import signal
 import sys
-import threading
-from collections.abc import Iterator
-from contextlib import contextmanager
-from types import FrameType
 
 import typer
 
-from vanner.cli.console import DEFAULT_SETTINGS, SettingsOption, set_up_log
+from vanner.cli.console import DEFAULT_SETTINGS, SettingsOption
+from vanner.cli.interrupting import stop_signals
+from vanner.cli.log import set_up_log
 from vanner.clock import now_s
 from vanner.daemon.engine import Engine
 from vanner.daemon.lock import sole_daemon
@@ -23,24 +20,6 @@ from vanner.daemon.service import Service
 from vanner.settings import Settings, load_settings
 from vanner.sources import build_source
 from vanner.store.database import Database
-
-
-@contextmanager
-def stop_signals() -> Iterator[threading.Event]:
-    """An event that SIGTERM and SIGINT set, for the length of the block."""
-    stop = threading.Event()
-
-    def on_signal(_number: int, _frame: FrameType | None) -> None:
-        stop.set()
-
-    earlier = {
-        number: signal.signal(number, on_signal) for number in (signal.SIGTERM, signal.SIGINT)
-    }
-    try:
-        yield stop
-    finally:
-        for number, handler in earlier.items():
-            signal.signal(number, handler)
 
 
 def build_service(settings: Settings, database: Database) -> Service:
@@ -67,7 +46,10 @@ def run(
     settings: SettingsOption = DEFAULT_SETTINGS,
     migrate: bool = typer.Option(True, help="Bring an older database up to date on start."),
 ) -> None:
-    """Serve: poll the sources, close pulses, raise alerts, send digests, until SIGTERM.
+    """Serve until stopped: poll, read, raise alerts, send digests.
+
+    It stays in the foreground and writes its log to standard error. SIGTERM and Ctrl-C end it
+    within seconds; what was accepted until then is kept.
 
     Example: vanner run --settings vanner.toml
     """
