@@ -125,7 +125,7 @@ def source_states(connection: Connection) -> list[SourceState]:
         .subquery()
     )
     query = (
-        select(source_state, func.coalesce(received.c.items, 0).label("items"), received.c.s)
+        select(source_state, func.coalesce(received.c["items"], 0).label("items"), received.c.s)
         .outerjoin(received, received.c.source == source_state.c.source)
         .order_by(source_state.c.source)
     )
