@@ -137,8 +137,8 @@ class DeskModel:
         reads = read_items(self, items, now_s)
         fresh = [read for item, read in zip(items, reads, strict=True) if item.revision == 1]
         self._fold_in(fresh, now_s)
-        arrivals = self._admit(fresh, now_s)
-        changed = self._judge(arrivals, now_s) if warm else []
+        arrivals, arrived = self._admit(fresh, now_s)
+        changed = self._judge(arrivals, arrived, now_s) if warm else []
         self._forget_items()
         stories = {story.number: story for story in [*cleared, *changed]}
         return PulseResult(
@@ -172,10 +172,15 @@ class DeskModel:
         oldest_s = min(read.item.published_s for read in reads)
         self.oldest_s = oldest_s if self.oldest_s is None else min(self.oldest_s, oldest_s)
 
-    def _admit(self, reads: Sequence[ItemRead], now_s: float) -> list[ItemRead]:
-        """Let items into the windows, or those that may raise nothing into the histories."""
+    def _admit(self, reads: Sequence[ItemRead], now_s: float) -> tuple[list[ItemRead], Ints]:
+        """Let items into the windows, or those that may raise nothing into the histories.
+
+        Returns:
+            The items that may join stories, and the terms to test: those of independent
+            items, since a copy adds nothing to a term's count.
+        """
         self.windows.advance(now_s)
-        taught, arrivals = [], []
+        taught, arrivals, independent = [], [], []
         for read in reads:
             item = read.item
             mentions = read.terms[read.own_share >= OWN_MENTION_SHARE]
@@ -194,14 +199,12 @@ class DeskModel:
             self.own_terms[item.item_id] = dict.fromkeys(mentions.tolist(), 1.0)
             if not self.windows.is_copy(item.copy_key):
                 self.windows.add(entry)
+                independent.append(mentions)
         self.windows.teach(taught, now_s)
-        return arrivals
+        return arrivals, np.unique(np.concatenate([np.zeros(0, np.int64), *independent]))
 
-    def _judge(self, arrivals: Sequence[ItemRead], now_s: float) -> list[Story]:
+    def _judge(self, arrivals: Sequence[ItemRead], numbers: Ints, now_s: float) -> list[Story]:
         own = {read.item.item_id: self.own_terms[read.item.item_id] for read in arrivals}
-        numbers: Ints = np.array(
-            sorted({term for terms in own.values() for term in terms}), dtype=np.int64
-        )
         self.budget.count_tests(numbers.size * len(SPANS_S), now_s)
         self.budget.forget(now_s)
         floor = self.budget.floor_bits(now_s)

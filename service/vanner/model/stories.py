@@ -256,7 +256,9 @@ class StoryBook:
         levels: Levels,
         changed: dict[int, Story],
     ) -> None:
-        left = [c for c in candidates if len(c.items) >= MIN_ITEMS]
+        # A later candidate of the pulse may have let a story take items of an earlier one.
+        left = [_without(candidate, self.story_of) for candidate in candidates]
+        left = [c for c in left if len(c.items) >= MIN_ITEMS]
         while left:
             first = left[0]
             if first.bits < levels.noted_bits:

@@ -182,32 +182,32 @@ class Windows:
             season: (hour band, weekday) of now in local time.
             now_s: Unix seconds.
         """
-        rows = [self._test_span(span, terms, season, now_s) for span in range(len(SPANS_S))]
+        by_season = self._in_season(terms, season, now_s)
+        rows = [self._test_span(span, terms, by_season, now_s) for span in range(len(SPANS_S))]
         bits, seen, expected, shape = (np.stack(part) for part in zip(*rows, strict=True))
         best: Ints = np.argmax(bits, axis=0)
         pick = (best, np.arange(terms.size))
         return Tests(terms, bits[pick], seen[pick], expected[pick], shape[pick], best)
 
+    def _in_season(
+        self, terms: Ints, season: tuple[int, int], now_s: float
+    ) -> list[tuple[Floats, float]]:
+        """(mentions of each term, items) of the season's hour band and of its weekday."""
+        mentions, items = self.seasons.at(terms, now_s), self.seasons.total_at(now_s)
+        cells = (season[0], BANDS + season[1])
+        return [(mentions[:, cell], float(items[cell])) for cell in cells]
+
     def _test_span(
-        self, span: int, terms: Ints, season: tuple[int, int], now_s: float
+        self, span: int, terms: Ints, by_season: list[tuple[Floats, float]], now_s: float
     ) -> tuple[Floats, Floats, Floats, Floats]:
         size = float(self.end - self.first[span])
         history = self.histories[span]
         seen = self.counts[span, terms]
         shape = SHAPE_UNSEEN + history.at(terms, now_s)
         rate = shape / (float(history.total_at(now_s)[0]) + 1.0)
-        highest = np.maximum(rate, self._season_rates(span, terms, rate, season, now_s))
+        whole_day = span == len(SPANS_S) - 1  # holds every hour band: only the weekday tells
+        highest = rate
+        for mentions, items in by_season[1:] if whole_day else by_season:
+            highest = np.maximum(highest, season_rate(rate, mentions, items, SEASON_STRENGTH))
         expected = np.maximum(size, 1.0) * highest
         return surprise_bits(seen, expected, shape), seen, expected, shape
-
-    def _season_rates(
-        self, span: int, terms: Ints, rate: Floats, season: tuple[int, int], now_s: float
-    ) -> Floats:
-        mentions = self.seasons.at(terms, now_s)
-        items = self.seasons.total_at(now_s)
-        day = BANDS + season[1]
-        rates = season_rate(rate, mentions[:, day], items[day], SEASON_STRENGTH)
-        if span == len(SPANS_S) - 1:
-            return rates  # a whole day holds every hour band
-        band = season[0]
-        return np.maximum(rates, season_rate(rate, mentions[:, band], items[band], SEASON_STRENGTH))
