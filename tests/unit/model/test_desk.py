@@ -233,7 +233,6 @@ def test_stories_do_not_depend_on_the_order_of_a_pulses_items(parameters, stream
     assert sum(raised is not None for _, raised, _, _ in outcomes[0]) >= 2
 
 
-@pytest.mark.xfail(raises=IndexError, reason="a term beyond the spans' counts is tested")
 def test_a_copy_may_own_a_word_that_its_original_did_not(parameters, term_item):
     # The word is common for an hour, through taught items, when the original comes; at the
     # copy's time that has faded. Nothing in the window has ever held the word as its own.

@@ -243,9 +243,6 @@ PULSES = st.lists(
 )
 
 
-@pytest.mark.xfail(
-    reason="`_begin` still hands a new story items that another took in the same pulse"
-)
 @given(pulses=PULSES, bits=st.lists(st.floats(6.0, 40.0), min_size=48, max_size=48))
 @settings(max_examples=150, deadline=None)
 def test_an_item_belongs_to_one_live_story_at_most(pulses, bits):
