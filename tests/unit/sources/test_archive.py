@@ -188,7 +188,7 @@ def test_a_line_of_just_the_limit_is_kept(tmp_path):
 
 def many(count: int) -> bytes:
     # Texts that gzip cannot shorten much, so that damage falls amid many lines.
-    dice = random.Random(4)  # noqa: S311 - the same bytes in every run, no secret
+    dice = random.Random(4)
     return b"".join(line(n, content_text=dice.randbytes(60).hex()) for n in range(1, count + 1))
 
 

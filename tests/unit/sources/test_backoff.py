@@ -60,7 +60,7 @@ def test_a_server_that_asks_for_years_is_asked_again_after_a_day():
 
 
 def test_sources_that_began_together_spread_out():
-    rng = random.Random(7)  # noqa: S311 - jitter, no secret
+    rng = random.Random(7)
     assert len({next_poll_s(NOW_S, 300.0, 0, rng) for _ in range(50)}) == 50
 
 
@@ -71,7 +71,7 @@ def test_sources_that_began_together_spread_out():
     seed=st.integers(0, 1000),
 )
 def test_the_pause_stays_within_its_bounds(every_s, failures, retry_s, seed):
-    rng = random.Random(seed)  # noqa: S311 - jitter, no secret
+    rng = random.Random(seed)
     retry_at_s = None if retry_s is None else NOW_S + retry_s
     pause_s = next_poll_s(NOW_S, every_s, failures, rng, retry_at_s) - NOW_S
     # A microsecond of slack is the rounding of times near a million seconds.

@@ -68,7 +68,7 @@ def test_a_poll_thrown_away_after_moving_loses_nothing(inbox):
 
 @pytest.mark.parametrize("seed", range(20))
 def test_killed_at_random_moments_every_item_is_committed_once_by_key(inbox, seed):
-    dice = random.Random(seed)  # noqa: S311 - the same run for the same seed, no secret
+    dice = random.Random(seed)
     expected = {f"n{n}" for n in range(60)}
     drop(inbox, "a.jsonl", archive(*range(40)), 50)
     drop(inbox, "b.jsonl", archive(*range(40, 50)) + b"bad\n", 40)

@@ -7,9 +7,9 @@ import pytest
 from vanner.sources.folder.documents import document_item
 
 
-def text_item(text, stem="note 7"):
+def text_item(text):
     data = text if isinstance(text, bytes) else text.encode()
-    return document_item(data, stem, ".txt")
+    return document_item(data, ".txt")
 
 
 def test_the_first_line_of_a_text_is_its_title():
@@ -17,10 +17,15 @@ def test_the_first_line_of_a_text_is_its_title():
     assert (item.title, item.content_text) == ("Gate shut", "The gate is shut.\nUntil May.")
 
 
-@pytest.mark.parametrize("text", ["Only one line.", "x" * 201 + "\nMore text."])
-def test_a_text_without_a_short_first_line_has_its_name_for_a_title(text):
+def test_a_text_of_one_short_line_is_all_title():
+    item = text_item("Only one line.")
+    assert (item.title, item.content_text) == ("Only one line.", "")
+
+
+def test_a_text_with_a_long_first_line_has_no_title():
+    text = "x" * 201 + "\nMore text."
     item = text_item(text)
-    assert (item.title, item.content_text) == ("note 7", text)
+    assert (item.title, item.content_text) == ("", text)
 
 
 def test_a_first_line_of_200_characters_is_a_title():
@@ -48,5 +53,5 @@ def test_a_text_has_no_date_and_its_digest_for_an_identifier():
 
 @pytest.mark.parametrize("extension", [".html", ".htm"])
 def test_html_is_handed_on_as_bytes_without_a_title(extension):
-    item = document_item(b"<title>Gate</title>", "note", extension)
+    item = document_item(b"<title>Gate</title>", extension)
     assert (item.title, item.content_html, item.content_text) == ("", b"<title>Gate</title>", None)

@@ -81,7 +81,7 @@ class Taker:
     def _take_document(self, file: Progress, part: Batch, extension: str) -> Finished:
         with (self._folder / file.name).open("rb") as opened:
             data = opened.read(DOCUMENT_BYTES + 1)
-        found = document_item(data, split_name(file.name)[0], extension)
+        found = document_item(data, extension)
         if isinstance(found, str):
             return rejected(file, found, part)
         part.add(self._owned(found), len(data))
