@@ -9,7 +9,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from sqlalchemy import Connection, and_, func, insert, select, update
+from sqlalchemy import Connection, Integer, and_, func, insert, select, update
 
 from vanner.clock import DAY_S
 from vanner.records import SourceVolume, StoryLine
@@ -122,8 +122,8 @@ def _volume(connection: Connection, source: str, from_s: float, until_s: float) 
         select(
             func.min(received),
             func.max(received),
-            func.coalesce(func.sum(received >= from_s), 0),
-            func.coalesce(func.sum(counts), 0),
+            func.coalesce(func.sum(received >= from_s, type_=Integer), 0),
+            func.coalesce(func.sum(counts, type_=Integer), 0),
         )
         .join(
             item_revision,

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from sqlalchemy import func, select
+from sqlalchemy import Integer, func, select
 
 from vanner.store.database import Database
 from vanner.store.schema import item, item_revision, story
@@ -47,11 +47,14 @@ class DeskActivity:
 
 def desk_activity(database: Database, since_s: float) -> list[DeskActivity]:
     """What each desk raised and noted since a time, and how many of its alerts run now."""
-    raised = func.coalesce(func.sum(story.c.raised_s > since_s), 0)
+    # A sum of conditions has their type, a truth value, unless another one is given.
+    raised = func.coalesce(func.sum(story.c.raised_s > since_s, type_=Integer), 0)
     running = func.coalesce(
-        func.sum(story.c.raised_s.is_not(None) & story.c.cleared_s.is_(None)), 0
+        func.sum(story.c.raised_s.is_not(None) & story.c.cleared_s.is_(None), type_=Integer), 0
     )
-    noted = func.coalesce(func.sum((story.c.noted_s > since_s) & story.c.raised_s.is_(None)), 0)
+    noted = func.coalesce(
+        func.sum((story.c.noted_s > since_s) & story.c.raised_s.is_(None), type_=Integer), 0
+    )
     query = (
         select(story.c.desk, raised, running, noted).group_by(story.c.desk).order_by(story.c.desk)
     )

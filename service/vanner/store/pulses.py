@@ -12,6 +12,7 @@ from sqlalchemy.dialects.sqlite import insert as upsert
 from vanner.clock import pulse_end_s, pulse_of
 from vanner.records import Reading, StoredItem, StoryRecord
 from vanner.store.database import Database
+from vanner.store.rows import insert_rows
 from vanner.store.schema import (
     clock,
     item,
@@ -150,19 +151,20 @@ def keep_readings(
             delete(table).where(table.c.desk == desk, table.c.item_id == bindparam("id")),
             [{"id": item_id} for item_id in revised],
         )
-    connection.execute(
-        insert(reading),
+    insert_rows(
+        connection,
+        reading,
         [
-            {
-                "desk": desk,
-                "item_id": one.item_id,
-                "words": one.words,
-                "standing": one.standing,
-                "running": one.running,
-                "house": one.house,
-                "own": one.own,
-                "bits_per_word": one.bits_per_word,
-            }
+            (
+                desk,
+                one.item_id,
+                one.words,
+                one.standing,
+                one.running,
+                one.house,
+                one.own,
+                one.bits_per_word,
+            )
             for one in rows.values()
         ],
     )
@@ -171,13 +173,7 @@ def keep_readings(
         for one in rows.values()
         for t in one.topics
     ]
-    if topics:
-        # The driver's own executemany: these are the most rows by far.
-        connection.exec_driver_sql(
-            "INSERT INTO topic (desk, item_id, term, weight, own_share, count) "
-            "VALUES (?, ?, ?, ?, ?, ?)",
-            topics,
-        )
+    insert_rows(connection, topic, topics)
 
 
 def keep_stories(
@@ -249,24 +245,15 @@ def _keep_parts(
 ) -> None:
     connection.execute(_FORGET_TERMS, [{"id": story_id} for story_id, _ in stories])
     terms = [
-        {
-            "story_id": story_id,
-            "term": t.term,
-            "bits": t.bits,
-            "seen": t.seen,
-            "expected": t.expected,
-            "joined_s": t.joined_s,
-        }
+        (story_id, t.term, t.bits, t.seen, t.expected, t.joined_s)
         for story_id, one in stories
         for t in one.terms
     ]
-    if terms:
-        connection.execute(insert(story_term), terms)
+    insert_rows(connection, story_term, terms)
     items = [
-        {"story_id": story_id, "item_id": i.item_id, "added_s": i.added_s}
+        (story_id, i.item_id, i.added_s)
         for story_id, one in stories
         for i in one.items
         if i.added_s == end_s
     ]
-    if items:
-        connection.execute(insert(story_item), items)
+    insert_rows(connection, story_item, items)

@@ -12,13 +12,13 @@ from vanner.errors import DatabaseError
 from vanner.store.database import Database
 from vanner.store.failures import database_errors
 
-# What one SELECT needs, and the pragmas that only tell. Opening the database read-only would
-# not be enough: ATTACH and VACUUM INTO make files, and some pragmas reach beyond the database.
-_READING = (
-    sqlite3.SQLITE_SELECT,
-    sqlite3.SQLITE_READ,
-    sqlite3.SQLITE_FUNCTION,
-    sqlite3.SQLITE_RECURSIVE,
+# A read-only connection is not enough: ATTACH and VACUUM INTO (which attaches) make files, and
+# some pragmas reach beyond the database. Of these only the ones that tell are let through.
+_REFUSED = (
+    sqlite3.SQLITE_ATTACH,
+    sqlite3.SQLITE_DETACH,
+    sqlite3.SQLITE_TRANSACTION,
+    sqlite3.SQLITE_SAVEPOINT,
 )
 _TELLING = frozenset(
     {
@@ -55,8 +55,8 @@ def _read_only(database: Database) -> Iterator[sqlite3.Connection]:
 
 
 def _authorize(action: int, name: str | None, *_: str | None) -> int:
-    telling = action == sqlite3.SQLITE_PRAGMA and name is not None and name.lower() in _TELLING
-    return sqlite3.SQLITE_OK if telling or action in _READING else sqlite3.SQLITE_DENY
+    odd_pragma = action == sqlite3.SQLITE_PRAGMA and (name or "").lower() not in _TELLING
+    return sqlite3.SQLITE_DENY if odd_pragma or action in _REFUSED else sqlite3.SQLITE_OK
 
 
 @contextmanager
@@ -82,7 +82,7 @@ def run_query(database: Database, sql: str) -> Iterator[Result]:
     except DatabaseError as error:
         cause = error.__cause__
         code = getattr(cause, "sqlite_errorcode", None)
-        if code == sqlite3.SQLITE_AUTH:
+        if code in (sqlite3.SQLITE_AUTH, sqlite3.SQLITE_READONLY):
             raise DatabaseError(
                 "The query cannot be run: it does more than read; give one SELECT."
             ) from cause

@@ -207,15 +207,17 @@ def test_guids_are_told_of_alerts_only(database, tell, receive, make_story):
 
 def test_the_overview_counts_items_alerts_and_noted_stories(database, tell, receive, make_story):
     assert counts(database) == Counts(0, 0, 0)
+    assert desk_activity(database, START_S) == []
     one = receive("a", text="first")
     receive("a", text="second")
     made = [
-        make_story(1, {one: START_S}),
-        make_story(2, {one: START_S}, raised_s=START_S),
-        make_story(3, {one: START_S}, raised_s=START_S - 60, cleared_s=START_S),
+        *(make_story(number, {one: START_S}) for number in (1, 2, 3)),
+        *(make_story(number, {one: START_S}, raised_s=START_S) for number in (4, 5)),
+        make_story(6, {one: START_S}, raised_s=START_S - 60, cleared_s=START_S),
     ]
     tell(made, START_S)
     assert item_count(database) == 2
-    assert counts(database) == Counts(items=1, alerts=2, noted=1)
-    assert desk_activity(database, START_S - 60) == [DeskActivity("harbour", 1, 1, 1)]
-    assert desk_activity(database, START_S) == [DeskActivity("harbour", 0, 1, 0)]
+    assert counts(database) == Counts(items=1, alerts=3, noted=3)
+    assert desk_activity(database, START_S - 90) == [DeskActivity("harbour", 3, 2, 3)]
+    assert desk_activity(database, START_S - 60) == [DeskActivity("harbour", 2, 2, 3)]
+    assert desk_activity(database, START_S) == [DeskActivity("harbour", 0, 2, 0)]
