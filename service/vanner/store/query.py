@@ -10,7 +10,7 @@ from pathlib import Path
 
 from vanner.errors import DatabaseError
 from vanner.store.database import Database
-from vanner.store.failures import database_errors
+from vanner.store.failures import as_database_error, database_errors
 
 # A read-only connection is not enough: ATTACH and VACUUM INTO (which attaches) make files, and
 # some pragmas reach beyond the database. Of these only the ones that tell are let through.
@@ -101,22 +101,34 @@ def back_up(database: Database, target: Path) -> int:
     Raises:
         DatabaseError: The target exists, cannot be written, or the database refused.
     """
-    if target.exists():
-        raise DatabaseError(f"The file {target} exists; name one that does not.")
     part = target.with_name(target.name + ".part")
     try:
-        with (
-            _read_only(database) as source,
-            database_errors(part),
-            closing(sqlite3.connect(part)) as copy,
-        ):
-            source.backup(copy)
-            copy.execute("PRAGMA journal_mode = DELETE")
-        part.replace(target)
+        if target.exists():
+            raise DatabaseError(f"The file {target} exists; name one that does not.")
+        part.unlink(missing_ok=True)
+        try:
+            _copy(database, part, target)
+            part.replace(target)
+        finally:
+            part.unlink(missing_ok=True)
     except OSError as error:
         raise DatabaseError(
             f"The backup {target} cannot be written ({error.strerror}); check its folder."
         ) from error
-    finally:
-        part.unlink(missing_ok=True)
     return target.stat().st_size
+
+
+def _copy(database: Database, part: Path, target: Path) -> None:
+    with _read_only(database) as source:
+        # A read transaction of its own: the copying would wait for a lock without end.
+        source.execute("BEGIN")
+        source.execute("SELECT count(*) FROM sqlite_master").fetchone()
+        try:
+            with closing(sqlite3.connect(part)) as copy:
+                source.backup(copy)
+                copy.execute("PRAGMA journal_mode = DELETE")
+        except sqlite3.Error as error:
+            # The copy is new: if one of the two is damaged, it is the database.
+            code = error.sqlite_errorcode & 0xFF
+            damaged = code in (sqlite3.SQLITE_CORRUPT, sqlite3.SQLITE_NOTADB)
+            raise as_database_error(error, database.path if damaged else target) from error
