@@ -64,15 +64,14 @@ def _check_header(path: Path, header: bytes, size: int) -> bool:
     page_size = 65536 if page_size == 1 else page_size
     changes, pages = struct.unpack(">II", header[24:32])
     (valid_for,) = struct.unpack(">I", header[92:96])
+    application = int.from_bytes(header[68:72], "big")
+    tableless = application == 0 and header[40:44] == bytes(4)
+    if application != APPLICATION_ID and not tableless:
+        raise DatabaseError(f"The database {path} belongs to another program; name another file.")
     # The size in pages counts only where it was written with the last change.
     if changes == valid_for and size < pages * page_size:
         raise _truncated(path)
-    application = int.from_bytes(header[68:72], "big")
-    if application == 0 and header[40:44] == bytes(4):
-        return True
-    if application != APPLICATION_ID:
-        raise DatabaseError(f"The database {path} belongs to another program; name another file.")
-    return False
+    return tableless
 
 
 def _holds_pages(log: Path) -> bool:
