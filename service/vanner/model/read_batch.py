@@ -88,7 +88,7 @@ def _read_group(
     prior = np.full((len(group), 2), PRIOR_WORDS)
     fitted = fit(counts, backgrounds, share, prior)
     own = np.where(counts > 0, own_share(fitted.theta, fitted.mixture, share), 0.0)
-    blend = fitted.parts.sum(axis=2) / share
+    blend = fitted.parts.sum(axis=0) / share
     bits = -(counts * np.log2(blend)).sum(axis=1)
     shares = _shares(counts, fitted, own)
     return [
@@ -108,6 +108,6 @@ def _read_group(
 def _shares(counts: Floats, fitted: Fit, own: Floats) -> Floats:
     """(n_items, 3) float64: shares of standing, running and own words; zero rows when empty."""
     words = np.maximum(counts.sum(axis=1), 1.0)[:, None]
-    backgrounds = (counts[:, :, None] * fitted.parts / fitted.mixture[:, :, None]).sum(axis=1)
+    backgrounds = (counts / fitted.mixture * fitted.parts).sum(axis=2).T
     result: Floats = np.column_stack((backgrounds, (counts * own).sum(axis=1))) / words
     return result

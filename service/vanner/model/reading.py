@@ -19,10 +19,10 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from vanner.model.decay import Floats
+from vanner.model.decay import Floats, Ints
 
 MAX_STEPS = 60
-GAIN_BITS_PER_WORD = 1e-7
+GAIN_BITS_PER_WORD = 1e-6
 
 
 def exact_theta(counts: Floats, background: Floats, background_share: float) -> Floats:
@@ -41,21 +41,20 @@ def exact_theta(counts: Floats, background: Floats, background_share: float) -> 
         (n_items, width) float64, each row summing to one; a row without counts stays zero.
     """
     odds = background_share / (1.0 - background_share)
+    rows = np.arange(counts.shape[0])[:, None]
     ratio = counts / background
     order = np.argsort(-ratio, axis=1, kind="stable")
-    sorted_counts = np.take_along_axis(counts, order, axis=1)
-    sorted_background = np.take_along_axis(background, order, axis=1)
-    level = np.cumsum(sorted_counts, axis=1) / (1.0 + odds * np.cumsum(sorted_background, axis=1))
-    sorted_ratio = np.take_along_axis(ratio, order, axis=1)
-    active: NDArray[np.bool_] = np.logical_and(sorted_ratio > odds * level, sorted_counts > 0)
-    last = active.shape[1] - 1 - np.argmax(active[:, ::-1], axis=1)
-    nu = np.take_along_axis(level, last[:, None], axis=1)
-    nu = np.where(nu > 0, nu, 1.0)
-    keep = np.arange(active.shape[1])[None, :] <= last[:, None]
-    keep &= np.logical_or.reduce(active, axis=1)[:, None]
-    theta = np.where(keep, sorted_counts / nu - odds * sorted_background, 0.0)
+    sorted_counts, sorted_background = counts[rows, order], background[rows, order]
+    level = np.cumsum(sorted_counts, axis=1)
+    level /= 1.0 + odds * np.cumsum(sorted_background, axis=1)
+    active: NDArray[np.bool_] = np.logical_and(ratio[rows, order] > odds * level, sorted_counts > 0)
+    # The largest active place of each row, or -1 where no word is active.
+    last = np.where(active, np.arange(counts.shape[1]), -1).max(axis=1, keepdims=True)
+    nu = np.where(last >= 0, level[rows, last], 1.0)
+    theta = np.maximum(sorted_counts / nu - odds * sorted_background, 0.0)
+    theta[np.arange(counts.shape[1]) > last] = 0.0
     result = np.zeros_like(theta)
-    np.put_along_axis(result, order, np.maximum(theta, 0.0), axis=1)
+    result[rows, order] = theta
     return result
 
 
@@ -67,7 +66,7 @@ class Fit:
         pi: (n_items, components) float64, weights of the backgrounds, rows summing to one.
         theta: (n_items, width) float64, the items' own distributions.
         mixture: (n_items, width) float64, P of each word.
-        parts: (n_items, width, components) float64, k pi_j B_j of each word.
+        parts: (components, n_items, width) float64, k pi_j B_j of each word.
         objective: (steps, n_items) float64, log-likelihood plus log prior in nats after each
             step; rows after an item's last step repeat its value.
     """
@@ -81,15 +80,67 @@ class Fit:
 
 def _objective(counts: Floats, mixture: Floats, pi: Floats, prior: Floats) -> Floats:
     logs = np.log(np.where(counts > 0, mixture, 1.0))
-    result: Floats = (counts * logs).sum(axis=1) + (prior * np.log(np.maximum(pi, 1e-300))).sum(
-        axis=1
-    )
+    believed = (prior * np.log(np.maximum(pi, 1e-300))).sum(axis=1)
+    result: Floats = (counts * logs).sum(axis=1) + believed
     return result
 
 
-def _parts(backgrounds: Floats, pi: Floats, share: float) -> Floats:
-    result: Floats = share * pi[:, None, :] * backgrounds
-    return result
+@dataclass(slots=True)
+class _Working:
+    """Items of a batch that are at the same step, by `places`, their rows in the batch.
+
+    Matrices are (n, width), `backgrounds` and `parts` have one for each component, `prior`
+    and `pi` are (n, components), `value` is the objective, (n,).
+    """
+
+    places: Ints
+    counts: Floats
+    backgrounds: Floats
+    prior: Floats
+    pi: Floats
+    theta: Floats
+    parts: Floats
+    mixture: Floats
+    value: Floats
+
+    @classmethod
+    def begin(cls, counts: Floats, backgrounds: Floats, prior: Floats, share: float) -> _Working:
+        """All items, pi at its prior mean."""
+        by_component = np.ascontiguousarray(np.moveaxis(backgrounds, 2, 0))
+        pi = prior / prior.sum(axis=1, keepdims=True)
+        none = np.zeros(0)
+        places = np.arange(counts.shape[0])
+        work = cls(places, counts, by_component, prior, pi, none, none, none, none)
+        work.settle(share)
+        return work
+
+    def some(self, rows: NDArray[np.bool_]) -> _Working:
+        """Only the items of those rows."""
+        return _Working(
+            self.places[rows],
+            self.counts[rows],
+            self.backgrounds[:, rows],
+            self.prior[rows],
+            self.pi[rows],
+            self.theta[rows],
+            self.parts[:, rows],
+            self.mixture[rows],
+            self.value[rows],
+        )
+
+    def settle(self, share: float) -> None:
+        """Set theta, the parts, the mixture and the objective from pi."""
+        self.parts = share * self.pi.T[:, :, None] * self.backgrounds
+        ordinary = self.parts.sum(axis=0)
+        self.theta = exact_theta(self.counts, ordinary / share, share)
+        self.mixture = ordinary + (1.0 - share) * self.theta
+        self.value = _objective(self.counts, self.mixture, self.pi, self.prior)
+
+    def step(self, share: float) -> None:
+        """One expectation and maximisation of pi, then theta anew."""
+        expected = (self.counts / self.mixture * self.parts).sum(axis=2).T + self.prior
+        self.pi = expected / expected.sum(axis=1, keepdims=True)
+        self.settle(share)
 
 
 def fit(
@@ -115,31 +166,33 @@ def fit(
     Returns:
         The fit. An item without words keeps pi at its prior mean and theta at zero.
     """
-    pi = prior_words / prior_words.sum(axis=1, keepdims=True)
-    theta = exact_theta(counts, (pi[:, None, :] * backgrounds).sum(axis=2), background_share)
-    words = counts.sum(axis=1)
-    parts = _parts(backgrounds, pi, background_share)
-    mixture = parts.sum(axis=2) + (1.0 - background_share) * theta
-    path = [_objective(counts, mixture, pi, prior_words)]
-    moving: NDArray[np.int64] = np.flatnonzero(words > 0)
+    work = _Working.begin(counts, backgrounds, prior_words, background_share)
+    enough = GAIN_BITS_PER_WORD * np.log(2.0) * counts.sum(axis=1)
+    path, done = [work.value], []
     for _ in range(max_steps):
-        if moving.size == 0:
-            break
-        share = parts[moving] / mixture[moving][:, :, None]
-        expected = (counts[moving][:, :, None] * share).sum(axis=1) + prior_words[moving]
-        new_pi = expected / expected.sum(axis=1, keepdims=True)
-        blend = (new_pi[:, None, :] * backgrounds[moving]).sum(axis=2)
-        new_theta = exact_theta(counts[moving], blend, background_share)
-        new_parts = _parts(backgrounds[moving], new_pi, background_share)
-        new_mixture = new_parts.sum(axis=2) + (1.0 - background_share) * new_theta
-        value = _objective(counts[moving], new_mixture, new_pi, prior_words[moving])
-        gain = value - path[-1][moving]
-        pi[moving], theta[moving] = new_pi, new_theta
-        parts[moving], mixture[moving] = new_parts, new_mixture
+        before = work.value
+        work.step(background_share)
         path.append(path[-1].copy())
-        path[-1][moving] = value
-        moving = moving[gain > GAIN_BITS_PER_WORD * np.log(2.0) * words[moving]]
-    return Fit(pi, theta, mixture, parts, np.array(path))
+        path[-1][work.places] = work.value
+        moving = work.value - before > enough[work.places]
+        if not moving.all():
+            done.append(work.some(~moving))
+            work = work.some(moving)
+            if work.places.size == 0:
+                break
+    return _gathered([*done, work], np.array(path))
+
+
+def _gathered(done: list[_Working], path: Floats) -> Fit:
+    """The items of several groups in the order of the batch."""
+    order = np.argsort(np.concatenate([group.places for group in done]))
+    return Fit(
+        np.concatenate([group.pi for group in done])[order],
+        np.concatenate([group.theta for group in done])[order],
+        np.concatenate([group.mixture for group in done])[order],
+        np.concatenate([group.parts for group in done], axis=1)[:, order],
+        path,
+    )
 
 
 def own_share(theta: Floats, mixture: Floats, background_share: float) -> Floats:
