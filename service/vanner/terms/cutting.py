@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections import Counter
 from typing import NamedTuple
 
-from vanner.terms.breaking import break_text
+from vanner.terms.breaking import break_text, find_words
 from vanner.terms.folding import term_of
 
 
@@ -48,11 +48,11 @@ def count_terms(title: str, text: str) -> dict[str, int]:
         before the text: what counting the terms of `cut` gives. Empty where neither has any.
     """
     # Distinct spellings are folded, not occurrences: there are far fewer of them.
-    spellings = Counter(break_text(title))
-    spellings.update(break_text(text))
+    spellings = Counter(find_words(title))
+    spellings.update(find_words(text))
     counts: dict[str, int] = {}
-    for piece, count in spellings.items():
-        term = term_of(piece)
+    for word, count in spellings.items():
+        term = term_of(word)
         if term is not None:
             counts[term] = counts.get(term, 0) + count
     return counts

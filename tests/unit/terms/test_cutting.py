@@ -53,6 +53,12 @@ def test_counting_equals_counting_the_cut_terms_in_order(title: str, text: str) 
     assert list(count_terms(title, text).items()) == list(expected.items())
 
 
+def test_counting_equals_counting_the_cut_terms_for_every_character() -> None:
+    for first in range(0, 0x40000, 0x1000):
+        text = " ".join(map(chr, range(first, first + 0x1000)))
+        assert count_terms("", text) == Counter(terms(text))
+
+
 @settings(deadline=None)
 @given(TEXTS)
 def test_breaking_loses_no_character(text: str) -> None:
