@@ -41,8 +41,9 @@ if TYPE_CHECKING:
 
 log = structlog.get_logger()
 
-# A restart derives at most so many pulses again.
+# A restart derives at most so many pulses again, and none after one with very many items.
 PULSES_PER_CHECKPOINT = 60
+ITEMS_FOR_CHECKPOINT = 2000
 
 
 @dataclass(frozen=True, slots=True)
@@ -142,12 +143,18 @@ class Engine:
             keep_checkpoint(connection, plan.desk, desk.checkpoint(self.read_s))
         return desk
 
-    def advance(self, until_s: float, on_pulse: Callable[[Progress], None] | None = None) -> None:
+    def advance(
+        self,
+        until_s: float,
+        on_pulse: Callable[[Progress], None] | None = None,
+        stopping: Callable[[], bool] = lambda: False,
+    ) -> None:
         """Close every pulse that ends by `until_s` and commit what it concludes.
 
         Args:
             until_s: Unix seconds; floored to the end of a whole pulse.
             on_pulse: Called after each pulse that held items.
+            stopping: Asked between commits whether to leave the rest for the next call.
 
         Raises:
             DatabaseError: The database refused. What was committed stands; the next call
@@ -161,27 +168,34 @@ class Engine:
         try:
             with self.database.write() as connection:
                 close_until(connection, end_s)
-            self._run(end_s, on_pulse)
+            self.read_s = self._run(end_s, on_pulse, stopping)
         except BaseException:
             # The models may be ahead of what was committed: load them anew before going on.
             self._stale = True
             raise
-        self.read_s = end_s
 
-    def _run(self, end_s: float, on_pulse: Callable[[Progress], None] | None) -> None:
+    def _run(
+        self,
+        end_s: float,
+        on_pulse: Callable[[Progress], None] | None,
+        stopping: Callable[[], bool],
+    ) -> float:
+        """Handle events in transactions; the end of the last pulse that is read."""
         more, read_s = True, self.read_s
         with closing(self._events(end_s)) as events:
-            while more:
+            while more and not stopping():
                 shown = []
                 with self.database.write() as connection:
                     for event in islice(events, self.pulses_per_commit):
                         shown.append(self._handle(connection, event))
                         read_s = event.end_s
                     more = len(shown) == self.pulses_per_commit
-                    mark_read(connection, read_s if more else end_s)
+                    read_s = read_s if more else end_s
+                    mark_read(connection, read_s)
                 for progress in shown:
                     if progress is not None and on_pulse is not None:
                         on_pulse(progress)
+        return read_s
 
     def _events(self, until_s: float) -> Events:
         """Events in order of time; at equal times pulses, then clearings, then digests."""
@@ -214,7 +228,10 @@ class Engine:
             return None
         raised = self._pulse(connection, event)
         self._pulses_since += 1
-        if self._pulses_since >= self.pulses_per_checkpoint:
+        if (
+            self._pulses_since >= self.pulses_per_checkpoint
+            or len(event.items) >= ITEMS_FOR_CHECKPOINT
+        ):
             self._keep_states(connection, event.end_s)
         return Progress(event.end_s, len(event.items), raised)
 

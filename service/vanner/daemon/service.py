@@ -79,10 +79,8 @@ class Service:
             register(connection, self._kinds)
         now_s = self._clock()
         self._engine.begin(now_s)
-        # What waited while no daemon ran is read at once, before anything new is polled.
-        self._engine.advance(now_s, self._on_pulse)
         self._scheduler.start()
-        self._at(self._engine.next_end_s(now_s) + _AFTER_CLOSE_S, "pulse", self._pulse)
+        self._at(now_s, "pulse", self._pulse)  # at once: something may have waited
         self._at(now_s, "post", self._post)
         for poller in self._pollers:
             self._at(now_s, f"poll {poller.source.name}", partial(self._poll, poller))
@@ -107,7 +105,7 @@ class Service:
         try:
             with self._working:
                 if not self._stopping.is_set():
-                    self._engine.advance(now_s, self._on_pulse)
+                    self._engine.advance(now_s, self._on_pulse, self._stopping.is_set)
         except VannerError as error:
             log.error("pulse_failed", reason=str(error))  # noqa: TRY400 - users get a sentence
             next_s = self._clock() + _RETRY_S
