@@ -49,7 +49,7 @@ def start_clock_at(database: Database) -> Callable[[float], None]:
     return start
 
 
-@pytest.fixture
+@pytest.fixture(scope="session")
 def make_item() -> Callable[..., Item]:
     def make(
         guid: str,
