@@ -73,7 +73,9 @@ def demo(
         with stop_signals() as stop:
             live_s = run_live(target, seconds, random_state, now_s, stop, _show)
             interrupted = stop.is_set()
-        missed = _conclude(target, outcomes(target, archive_s, live_s, seconds, random_state))
+        missed = _conclude(
+            target, outcomes(target, archive_s, live_s, seconds, random_state, now_s())
+        )
         _offer(target)
     finally:
         target.close()

@@ -98,9 +98,14 @@ def run_live(
 
 
 def outcomes(
-    database: Database, archive_s: float, live_s: float, seconds: float, random_state: int
+    database: Database,
+    archive_s: float,
+    live_s: float,
+    seconds: float,
+    random_state: int,
+    clock_s: float,
 ) -> list[Outcome]:
-    """What became of every planted story, those of the archive first."""
+    """What became of every planted story until now, those of the archive first."""
     planted = [
         *planted_stories(archive_s, DAYS, random_state),
         *planted_live(live_s, seconds, random_state),
@@ -108,7 +113,7 @@ def outcomes(
     with database.read() as connection:
         alerts = raised_guids(connection)
         return [
-            Outcome(story, story_line(connection, found) if found is not None else None)
+            Outcome(story, None if found is None else story_line(connection, found, clock_s))
             for story, found in ((story, _alert_about(story, alerts)) for story in planted)
         ]
 

@@ -6,7 +6,7 @@ import hashlib
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 
-from vanner.daemon.plan import DeskPlan, pack_plan, unpack_plan
+from vanner.daemon.plan import DeskPlan, is_away, pack_plan, unpack_plan
 from vanner.errors import DatabaseError
 from vanner.model.desk import DeskModel, PulseResult, TermItem
 from vanner.model.state import STATE_VERSION, StateVersionError, pack, retune, unpack
@@ -102,6 +102,10 @@ def restored_desk(
         raise DatabaseError(
             f"The database {database.path} holds {error}; run `vanner rebuild` to derive it again."
         ) from error
+    if is_away(saved.parameters):
+        # What passed meanwhile is not the desk's; it goes on from where it left.
+        retune(model, plan.parameters, read_s)
+        return Desk(plan, model, started_s)
     pulse_s = earlier.parameters.pulse_s
     for end_s, items in pulses_between(database, saved.at_s, read_s, pulse_s):
         clear_until(model, end_s, inclusive=False)

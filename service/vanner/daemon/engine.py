@@ -8,7 +8,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Generator, Sequence
 from contextlib import closing
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from itertools import islice
 from typing import TYPE_CHECKING
 
@@ -18,7 +18,7 @@ from vanner.alerts.mail import compose_alert
 from vanner.clock import pulse_end_s, pulse_of
 from vanner.daemon.desks import Desk, new_desk, restored_desk, step, term_items
 from vanner.daemon.digesting import DigestBook, make_digest
-from vanner.daemon.plan import DeskPlan, pack_plan
+from vanner.daemon.plan import DeskPlan, is_away, pack_plan, unpack_plan
 from vanner.store.checkpoints import begin_desk, checkpoint_of, desk_starts, keep_checkpoint
 from vanner.store.outbox import queue
 from vanner.store.pulses import (
@@ -125,9 +125,23 @@ class Engine:
             starts = desk_starts(connection)
         self.read_s = state.read_s
         self.desks = tuple(self._load(plan, starts[plan.desk]) for plan in self.plans)
+        for name in starts.keys() - {plan.desk for plan in self.plans}:
+            self._leave(name, starts[name])
         self._digests = DigestBook(self.plans, self.read_s)
         self._pulses_since = 0
         self._stale = False
+
+    def _leave(self, name: str, started_s: float) -> None:
+        """Save a desk that is no longer served as it stands, for the case that it returns."""
+        with self.database.read() as connection:
+            saved = checkpoint_of(connection, name)
+        if saved is None or is_away(saved.parameters):
+            return
+        plan = unpack_plan(saved.parameters)
+        desk = restored_desk(self.database, plan, saved, self.read_s, started_s)
+        state = replace(desk.checkpoint(self.read_s), parameters=pack_plan(plan, away=True))
+        with self.database.write() as connection:
+            keep_checkpoint(connection, name, state)
 
     def _load(self, plan: DeskPlan, started_s: float) -> Desk:
         with self.database.read() as connection:
@@ -188,7 +202,8 @@ class Engine:
                 with self.database.write() as connection:
                     for event in islice(events, self.pulses_per_commit):
                         shown.append(self._handle(connection, event))
-                        read_s = event.end_s
+                        # A desk that returns may first clear stories of an earlier time.
+                        read_s = max(read_s, event.end_s)
                     more = len(shown) == self.pulses_per_commit
                     read_s = read_s if more else end_s
                     mark_read(connection, read_s)
@@ -261,7 +276,7 @@ class Engine:
         keep_readings(connection, plan.desk, result.readings, revised)
         keep_stories(connection, plan.desk, result.stories, end_s, ids)
         raised = [
-            story_line(connection, ids[story.number])
+            story_line(connection, ids[story.number], end_s)
             for story in result.stories
             if story.raised_s == end_s
         ]

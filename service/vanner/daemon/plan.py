@@ -86,10 +86,21 @@ def replay_plan(alerts_per_day: float, zone: str, pulse_s: float) -> DeskPlan:
     return DeskPlan(_parameters(desk, zone, pulse_s), sources=None)
 
 
-def pack_plan(plan: DeskPlan) -> str:
-    """What a checkpoint must know of a plan to derive the pulses after it again."""
-    told = {"parameters": json.loads(pack_parameters(plan.parameters)), "sources": plan.sources}
+def pack_plan(plan: DeskPlan, *, away: bool = False) -> str:
+    """What a checkpoint must know of a plan to derive the pulses after it again.
+
+    Args:
+        plan: The plan.
+        away: Whether the desk is no longer served, so that nothing after the checkpoint is its.
+    """
+    parameters = json.loads(pack_parameters(plan.parameters))
+    told = {"parameters": parameters, "sources": plan.sources, "away": away}
     return json.dumps(told, sort_keys=True)
+
+
+def is_away(text: str) -> bool:
+    """Whether a checkpoint is of a desk that was no longer served."""
+    return bool(json.loads(text)["away"])
 
 
 def unpack_plan(text: str) -> DeskPlan:

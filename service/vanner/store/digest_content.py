@@ -61,6 +61,7 @@ def raised_between(
     """A desk's alerts raised in (from_s, until_s], oldest first."""
     return story_lines(
         connection,
+        until_s,
         and_(story.c.desk == desk, story.c.raised_s > from_s, story.c.raised_s <= until_s),
         story.c.raised_s,
         story.c.story_id,
@@ -73,6 +74,7 @@ def noted_between(
     """Stories noted in (from_s, until_s] and not raised, most bits first."""
     return story_lines(
         connection,
+        until_s,
         and_(
             story.c.desk == desk,
             story.c.noted_s > from_s,
@@ -90,6 +92,7 @@ def cleared_between(
     """A desk's alerts that cleared in (from_s, until_s], oldest first."""
     return story_lines(
         connection,
+        until_s,
         and_(
             story.c.desk == desk,
             story.c.raised_s.is_not(None),

@@ -21,8 +21,20 @@ def _state(row: Row[tuple[object, ...]]) -> str:
     return "raised" if row.cleared_s is None else "cleared"
 
 
+def _revision_then(as_of_s: float) -> ColumnElement[bool]:
+    """Joins an item to the revision that was its latest at a time."""
+    earlier = item_revision.alias()
+    latest = (
+        select(func.max(earlier.c.revision))
+        .where(earlier.c.item_id == item.c.item_id, earlier.c.received_s < as_of_s)
+        .scalar_subquery()
+    )
+    return (item_revision.c.item_id == item.c.item_id) & (item_revision.c.revision == latest)
+
+
 def story_lines(
     connection: Connection,
+    as_of_s: float,
     condition: ColumnElement[bool],
     *order: ColumnElement[object],
     limit: int | None = None,
@@ -31,6 +43,8 @@ def story_lines(
 
     Args:
         connection: Any connection.
+        as_of_s: Items are shown as received before this time: what is made late must not show
+            revisions that came after its time.
         condition: Over the columns of `schema.story`.
         order: What to sort by.
         limit: How many at most.
@@ -38,26 +52,22 @@ def story_lines(
     query = (
         select(story, item_revision.c.title, item_revision.c.content_text)
         .join(item, item.c.item_id == story.c.headline_item_id)
-        .join(
-            item_revision,
-            (item_revision.c.item_id == item.c.item_id)
-            & (item_revision.c.revision == item.c.latest_revision),
-        )
+        .join(item_revision, _revision_then(as_of_s))
         .where(condition)
         .order_by(*order)
         .limit(limit)
     )
-    return [_line(connection, row) for row in connection.execute(query).all()]
+    return [_line(connection, row, as_of_s) for row in connection.execute(query).all()]
 
 
-def story_line(connection: Connection, story_id: int) -> StoryLine:
-    """One story; it must exist."""
-    (line,) = story_lines(connection, story.c.story_id == story_id)
+def story_line(connection: Connection, story_id: int, as_of_s: float) -> StoryLine:
+    """One story, which must exist, with its items as received before a time."""
+    (line,) = story_lines(connection, as_of_s, story.c.story_id == story_id)
     return line
 
 
-def _line(connection: Connection, row: Row[tuple[object, ...]]) -> StoryLine:
-    items, count, sources = _items(connection, row.story_id)
+def _line(connection: Connection, row: Row[tuple[object, ...]], as_of_s: float) -> StoryLine:
+    items, count, sources = _items(connection, row.story_id, as_of_s)
     return StoryLine(
         story_id=row.story_id,
         desk=row.desk,
@@ -90,7 +100,9 @@ def _terms(connection: Connection, story_id: int) -> tuple[StoryTerm, ...]:
     return tuple(StoryTerm(*row) for row in connection.execute(query))
 
 
-def _items(connection: Connection, story_id: int) -> tuple[tuple[ItemLine, ...], int, int]:
+def _items(
+    connection: Connection, story_id: int, as_of_s: float
+) -> tuple[tuple[ItemLine, ...], int, int]:
     chosen = story_item.c.story_id == story_id
     count, sources = connection.execute(
         select(func.count(), func.count(item.c.source.distinct()))
@@ -109,11 +121,7 @@ def _items(connection: Connection, story_id: int) -> tuple[tuple[ItemLine, ...],
         )
         .select_from(story_item)
         .join(item, item.c.item_id == story_item.c.item_id)
-        .join(
-            item_revision,
-            (item_revision.c.item_id == item.c.item_id)
-            & (item_revision.c.revision == item.c.latest_revision),
-        )
+        .join(item_revision, _revision_then(as_of_s))
         .where(chosen)
         .order_by(story_item.c.added_s.desc(), item.c.item_id.desc())
         .limit(ITEMS_SHOWN)

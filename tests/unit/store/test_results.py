@@ -174,7 +174,7 @@ def test_a_story_reads_as_it_stands_with_its_newest_items_last(database, tell, r
     for time_s in added.values():
         tell([made], time_s)
     with database.read() as connection:
-        line = story_line(connection, 1)
+        line = story_line(connection, 1, 1e12)
     assert (line.state, line.headline, line.item_count, line.source_count) == (
         "raised", "Barge 0", ITEMS_SHOWN + 3, 1,
     )  # fmt: skip
@@ -190,7 +190,7 @@ def test_an_item_without_a_title_is_told_by_the_beginning_of_its_text(
     number = receive("a", text="The  tug\nwaits. " + "On and on. " * 20)
     tell([make_story(1, {number: START_S})], START_S)
     with database.read() as connection:
-        (line,) = story_lines(connection, story.c.raised_s.is_(None))
+        (line,) = story_lines(connection, 1e12, story.c.raised_s.is_(None))
     assert line.headline == line.items[0].title
     assert line.headline.startswith("The tug waits. On and on.")
     assert len(line.headline) <= 120
