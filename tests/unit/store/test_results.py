@@ -196,6 +196,22 @@ def test_an_item_without_a_title_is_told_by_the_beginning_of_its_text(
     assert len(line.headline) <= 120
 
 
+def test_a_story_shows_its_items_as_they_were_received_before_its_time(
+    database, tell, receive, make_story
+):
+    number = receive("a", START_S + 5, title="Dredger aground")
+    receive("a", START_S + 60, title="Dredger afloat")
+    tell([make_story(1, {number: START_S + 60})], START_S + 60)
+
+    def titles(as_of_s):
+        with database.read() as connection:
+            line = story_line(connection, 1, as_of_s)
+        return {line.headline, *(one.title for one in line.items)}
+
+    assert titles(START_S + 60) == {"Dredger aground"}
+    assert titles(START_S + 61) == {"Dredger afloat"}
+
+
 def test_guids_are_told_of_alerts_only(database, tell, receive, make_story):
     one, other = receive("a"), receive("b")
     tell(
