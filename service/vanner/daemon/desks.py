@@ -4,14 +4,14 @@ from __future__ import annotations
 
 import hashlib
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 from vanner.daemon.plan import DeskPlan, is_away, pack_plan, unpack_plan
 from vanner.errors import DatabaseError
 from vanner.model.desk import DeskModel, PulseResult, TermItem
 from vanner.model.state import STATE_VERSION, StateVersionError, pack, retune, unpack
 from vanner.records import StoredItem
-from vanner.store.checkpoints import Checkpoint
+from vanner.store.checkpoints import Checkpoint, checkpoint_of, keep_checkpoint
 from vanner.store.database import Database
 from vanner.store.pulses import pulses_between
 from vanner.terms import count_terms
@@ -124,3 +124,36 @@ def clear_until(model: DeskModel, limit_s: float, *, inclusive: bool) -> None:
         if due_s > limit_s or (due_s == limit_s and not inclusive):
             return
         model.step(due_s, [])
+
+
+def load_desk(database: Database, plan: DeskPlan, read_s: float, started_s: float) -> Desk:
+    """A desk as it stands at `read_s`, from then on following this plan.
+
+    Raises:
+        DatabaseError: The database refused, or holds a state that cannot be read.
+    """
+    with database.read() as connection:
+        saved = checkpoint_of(connection, plan.desk)
+    if saved is None:
+        desk = new_desk(plan, started_s)
+    else:
+        desk = restored_desk(database, plan, saved, read_s, started_s)
+        if saved.parameters == pack_plan(plan):
+            return desk
+    # From here on the desk follows this plan: a crash must not bring the old one back.
+    with database.write() as connection:
+        keep_checkpoint(connection, plan.desk, desk.checkpoint(read_s))
+    return desk
+
+
+def leave_desk(database: Database, name: str, read_s: float, started_s: float) -> None:
+    """Save a desk that is no longer served as it stands, for the case that it returns."""
+    with database.read() as connection:
+        saved = checkpoint_of(connection, name)
+    if saved is None or is_away(saved.parameters):
+        return
+    plan = unpack_plan(saved.parameters)
+    desk = restored_desk(database, plan, saved, read_s, started_s)
+    state = replace(desk.checkpoint(read_s), parameters=pack_plan(plan, away=True))
+    with database.write() as connection:
+        keep_checkpoint(connection, name, state)

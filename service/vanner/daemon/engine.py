@@ -6,9 +6,9 @@ order in which they were received; when it is called and how often does not matt
 
 from __future__ import annotations
 
-from collections.abc import Callable, Generator, Sequence
+from collections.abc import Callable, Sequence
 from contextlib import closing
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from itertools import islice
 from typing import TYPE_CHECKING
 
@@ -16,10 +16,11 @@ import structlog
 
 from vanner.alerts.mail import compose_alert
 from vanner.clock import pulse_end_s, pulse_of
-from vanner.daemon.desks import Desk, new_desk, restored_desk, step, term_items
+from vanner.daemon.desks import Desk, leave_desk, load_desk, step, term_items
 from vanner.daemon.digesting import DigestBook, make_digest
-from vanner.daemon.plan import DeskPlan, is_away, pack_plan, unpack_plan
-from vanner.store.checkpoints import begin_desk, checkpoint_of, desk_starts, keep_checkpoint
+from vanner.daemon.events import DigestEvent, PulseEvent, Timeline
+from vanner.daemon.plan import DeskPlan
+from vanner.store.checkpoints import begin_desk, desk_starts, keep_checkpoint
 from vanner.store.outbox import queue
 from vanner.store.pulses import (
     ClockState,
@@ -28,15 +29,13 @@ from vanner.store.pulses import (
     keep_readings,
     keep_stories,
     mark_read,
-    pulses_between,
     start_clock,
 )
 from vanner.store.stories import story_line
 
 if TYPE_CHECKING:
-    from vanner.digests.schedule import Slot
     from vanner.model.desk import PulseResult
-    from vanner.records import StoredItem, StoryLine
+    from vanner.records import StoryLine
     from vanner.store.database import Connection, Database
 
 log = structlog.get_logger()
@@ -44,27 +43,6 @@ log = structlog.get_logger()
 # A restart derives at most so many pulses again, and none after one with very many items.
 PULSES_PER_CHECKPOINT = 60
 ITEMS_FOR_CHECKPOINT = 2000
-
-
-@dataclass(frozen=True, slots=True)
-class PulseEvent:
-    """A pulse with items, or (with none) one in which a story of some desk clears."""
-
-    end_s: float
-    items: tuple[StoredItem, ...]
-
-
-@dataclass(frozen=True, slots=True)
-class DigestEvent:
-    """A digest that is due; `end_s` is the end of the last pulse before it."""
-
-    plan: DeskPlan
-    schedule: str
-    slot: Slot
-    end_s: float
-
-
-Events = Generator[PulseEvent | DigestEvent, None, None]
 
 
 @dataclass(frozen=True, slots=True)
@@ -99,7 +77,7 @@ class Engine:
         self.pulses_per_checkpoint = pulses_per_checkpoint
         self.desks: tuple[Desk, ...] = ()
         self.read_s = 0.0
-        self._digests = DigestBook(())
+        self._timeline = Timeline(database, (), DigestBook(()), pulse_s)
         self._pulses_since = 0
         self._stale = True
 
@@ -124,38 +102,15 @@ class Engine:
                 begin_desk(connection, plan.desk, state.read_s)
             starts = desk_starts(connection)
         self.read_s = state.read_s
-        self.desks = tuple(self._load(plan, starts[plan.desk]) for plan in self.plans)
+        self.desks = tuple(
+            load_desk(self.database, plan, self.read_s, starts[plan.desk]) for plan in self.plans
+        )
         for name in starts.keys() - {plan.desk for plan in self.plans}:
-            self._leave(name, starts[name])
-        self._digests = DigestBook(self.plans, self.read_s)
+            leave_desk(self.database, name, self.read_s, starts[name])
+        digests = DigestBook(self.plans, self.read_s)
+        self._timeline = Timeline(self.database, self.desks, digests, self.pulse_s)
         self._pulses_since = 0
         self._stale = False
-
-    def _leave(self, name: str, started_s: float) -> None:
-        """Save a desk that is no longer served as it stands, for the case that it returns."""
-        with self.database.read() as connection:
-            saved = checkpoint_of(connection, name)
-        if saved is None or is_away(saved.parameters):
-            return
-        plan = unpack_plan(saved.parameters)
-        desk = restored_desk(self.database, plan, saved, self.read_s, started_s)
-        state = replace(desk.checkpoint(self.read_s), parameters=pack_plan(plan, away=True))
-        with self.database.write() as connection:
-            keep_checkpoint(connection, name, state)
-
-    def _load(self, plan: DeskPlan, started_s: float) -> Desk:
-        with self.database.read() as connection:
-            saved = checkpoint_of(connection, plan.desk)
-        if saved is not None:
-            desk = restored_desk(self.database, plan, saved, self.read_s, started_s)
-            if saved.parameters == pack_plan(plan):
-                return desk
-        else:
-            desk = new_desk(plan, started_s)
-        # From here on the desk follows this plan: a crash must not bring the old one back.
-        with self.database.write() as connection:
-            keep_checkpoint(connection, plan.desk, desk.checkpoint(self.read_s))
-        return desk
 
     def advance(
         self,
@@ -196,7 +151,7 @@ class Engine:
     ) -> float:
         """Handle events in transactions; the end of the last pulse that is read."""
         more, read_s = True, self.read_s
-        with closing(self._events(end_s)) as events:
+        with closing(self._timeline.events(self.read_s, end_s)) as events:
             while more and not stopping():
                 shown = []
                 with self.database.write() as connection:
@@ -211,29 +166,6 @@ class Engine:
                     if progress is not None and on_pulse is not None:
                         on_pulse(progress)
         return read_s
-
-    def _events(self, until_s: float) -> Events:
-        """Events in order of time; at equal times pulses, then clearings, then digests."""
-        for end_s, items in pulses_between(self.database, self.read_s, until_s, self.pulse_s):
-            yield from self._quiet_events(end_s, inclusive=False)
-            yield PulseEvent(end_s, tuple(items))
-        yield from self._quiet_events(until_s, inclusive=True)
-
-    def _quiet_events(self, limit_s: float, *, inclusive: bool) -> Events:
-        """Clearings and digests before (or up to) a time; each is handled before the next."""
-        while True:
-            due = [desk.model.next_clearing_s() for desk in self.desks]
-            clears_s = min((time for time in due if time is not None), default=float("inf"))
-            digest = self._digests.next(limit_s)
-            slot_s = digest[2].scheduled_s if digest is not None else float("inf")
-            first_s = min(clears_s, slot_s)
-            if first_s > limit_s or (first_s == limit_s and not inclusive):
-                return
-            if clears_s <= slot_s or digest is None:
-                yield PulseEvent(clears_s, ())
-            else:
-                self._digests.done(digest)
-                yield DigestEvent(*digest, pulse_of(slot_s, self.pulse_s) * self.pulse_s)
 
     def _handle(self, connection: Connection, event: PulseEvent | DigestEvent) -> Progress | None:
         if isinstance(event, DigestEvent):
