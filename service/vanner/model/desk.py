@@ -18,9 +18,10 @@ from vanner.model.background import Background
 from vanner.model.budget import NOTED_FRACTION, Budget
 from vanner.model.decay import Ints
 from vanner.model.read_batch import ItemRead, read_items
+from vanner.model.results import reading_of, record_of
 from vanner.model.stories import Candidate, Levels, Story, StoryBook
 from vanner.model.windows import SPANS_S, Tests, WindowItem, Windows
-from vanner.records import Reading, StoryItem, StoryRecord, StoryTerm, Topic
+from vanner.records import Reading, StoryRecord
 
 OWN_MENTION_SHARE = 0.5
 STANDING_BASE_WORDS = 1000.0
@@ -142,8 +143,11 @@ class DeskModel:
         self._forget_items()
         stories = {story.number: story for story in [*cleared, *changed]}
         return PulseResult(
-            tuple(self._reading(read) for read in reads),
-            tuple(self._record(stories[number]) for number in sorted(stories)),
+            tuple(reading_of(read, self.terms) for read in reads),
+            tuple(
+                record_of(self.parameters.desk, stories[number], self.terms)
+                for number in sorted(stories)
+            ),
         )
 
     def next_clearing_s(self) -> float | None:
@@ -244,46 +248,3 @@ class DeskModel:
         if len(self.own_terms) > 2 * len(self.windows.items) + 64:
             kept = {item.item_id for item in self.windows.items}
             self.own_terms = {i: t for i, t in self.own_terms.items() if i in kept}
-
-    def _reading(self, read: ItemRead) -> Reading:
-        active = np.flatnonzero(read.theta > 0)
-        active = active[np.argsort(-read.theta[active], kind="stable")]
-        topics = tuple(
-            Topic(
-                self.terms[read.terms[k]],
-                float(read.theta[k]),
-                float(read.own_share[k]),
-                int(read.counts[k]),
-            )
-            for k in active.tolist()
-        )
-        standing, running, house, own = read.shares
-        return Reading(
-            read.item.item_id,
-            int(read.counts.sum()),
-            standing,
-            running,
-            house,
-            own,
-            read.bits_per_word,
-            topics,
-        )
-
-    def _record(self, story: Story) -> StoryRecord:
-        terms = sorted(story.terms.items(), key=lambda pair: (-pair[1].bits, pair[0]))
-        return StoryRecord(
-            self.parameters.desk,
-            story.number,
-            story.noted_s,
-            story.raised_s,
-            story.last_activity_s,
-            story.cleared_s,
-            story.headline_item,
-            story.bits,
-            story.threshold_bits,
-            tuple(
-                StoryTerm(self.terms[number], t.bits, int(t.seen), t.expected, t.joined_s)
-                for number, t in terms
-            ),
-            tuple(StoryItem(item_id, added_s) for item_id, added_s in story.items.items()),
-        )
