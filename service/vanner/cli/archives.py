@@ -20,7 +20,7 @@ from vanner.cli.console import (
     warn,
 )
 from vanner.cli.log import set_up_log
-from vanner.clock import iso_utc, now_s
+from vanner.clock import iso_utc, now_s, pulse_of
 from vanner.daemon.archiving import accept_archive, archive_items, open_fresh, replay, teach
 from vanner.daemon.lock import is_served
 from vanner.daemon.plan import replay_plan
@@ -30,11 +30,13 @@ from vanner.settings import load_settings
 from vanner.sources.archive import open_archive
 from vanner.store.database import Database
 from vanner.store.overview import counts, item_count
+from vanner.store.pulses import ClockState, clock_state, start_clock
 
 ArchivesArgument = Annotated[
     list[Path], typer.Argument(metavar="ARCHIVE", help="JSON Lines, plain or gzip.")
 ]
 
+SERVICE = "service"  # the purpose of a daemon's database
 _FAULTS_SHOWN = 20
 _FIRST_QUERY = '"SELECT raised_at, headline, items FROM alerts ORDER BY raised_at"'
 
@@ -135,6 +137,16 @@ def _without_source(raw_items: Iterator[RawItem]) -> Iterator[RawItem]:
     return (replace(raw, source=None) for raw in raw_items)
 
 
+def _begin(database: Database, pulse_s: float) -> None:
+    """Start the clock of a new database, as its first daemon would: else that daemon's clock
+    began after what is imported now, and none of it were read.
+    """
+    with database.write() as connection:
+        if clock_state(connection) is None:
+            begin_s = pulse_of(now_s(), pulse_s) * pulse_s
+            start_clock(connection, ClockState(pulse_s, begin_s, begin_s, SERVICE))
+
+
 def import_command(
     archives: ArchivesArgument,
     source: Annotated[
@@ -158,6 +170,7 @@ def import_command(
     _look_for(archives)
     database = Database.open(told.database_path)
     try:
+        _begin(database, told.service.pulse)
         faults = Faults()
         with progress("Importing", None) as bar:
             items = _without_source(archive_items(archives, faults))

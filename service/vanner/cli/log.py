@@ -30,7 +30,8 @@ def set_up_log(form: str, *, quiet: bool = False) -> None:
         cache_logger_on_first_use=False,
     )
     # What libraries report joins the same stream, so that every line of it has one form.
-    logging.basicConfig(handlers=[_LibraryHandler()], level=logging.WARNING, force=True)
+    logging.root.handlers[:] = [_LibraryHandler()]
+    logging.root.setLevel(logging.WARNING)
     logging.captureWarnings(True)
 
 
