@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import signal
 import threading
-from collections.abc import Iterator
+import time
+from collections.abc import Callable, Iterator
 from contextlib import contextmanager
 from types import FrameType
 
@@ -25,6 +26,17 @@ def stop_signals() -> Iterator[threading.Event]:
     finally:
         for number, handler in earlier.items():
             signal.signal(number, handler)
+
+
+def leave_at_latest(stop: threading.Event, after_s: float, leave: Callable[[], None]) -> None:
+    """Call `leave` so long after `stop` was set, unless the process has ended by then."""
+
+    def wait() -> None:
+        stop.wait()
+        time.sleep(after_s)
+        leave()
+
+    threading.Thread(target=wait, daemon=True).start()
 
 
 @contextmanager

@@ -9,7 +9,7 @@ import sys
 import typer
 
 from vanner.cli.console import DEFAULT_SETTINGS, SettingsOption
-from vanner.cli.interrupting import stop_signals
+from vanner.cli.interrupting import leave_at_latest, stop_signals
 from vanner.cli.log import set_up_log
 from vanner.clock import now_s
 from vanner.daemon.engine import Engine
@@ -20,6 +20,10 @@ from vanner.daemon.service import Service
 from vanner.settings import Settings, load_settings
 from vanner.sources import build_source
 from vanner.store.database import Database
+
+# A pulse that takes longer, such as one with a long archive to learn from, is broken off: it
+# is rolled back and read anew at the next start.
+_LEAVE_AFTER_S = 9.0
 
 
 def build_service(settings: Settings, database: Database) -> Service:
@@ -57,17 +61,22 @@ def run(
     set_up_log(told.service.log)
     path = told.database_path
     with stop_signals() as stop, sole_daemon(path):
+        leave_at_latest(stop, _LEAVE_AFTER_S, _leave)
         database = Database.open(path, migrate=migrate)
         service = build_service(told, database)
         service.start()
         stop.wait()
         service.stop()
         database.close()
-    sys.stdout.flush()
-    sys.stderr.flush()
     # A poll may hang in the network for up to a minute, and the interpreter would wait for
     # its thread. Everything is committed by now, and what a poll was about to bring is there
     # at the next start.
+    _leave()
+
+
+def _leave() -> None:
+    sys.stdout.flush()
+    sys.stderr.flush()
     os._exit(0)
 
 

@@ -47,6 +47,7 @@ def test_a_missing_settings_file_is_told_with_how_to_make_one(vanner, words):
     assert "no settings file other.toml" in sentence(vanner(*words, "-s", "other.toml"), 2)
 
 
+@pytest.mark.slow
 def test_a_missing_settings_file_is_told_by_a_real_process(process, tmp_path):
     told = sentence(process("run", cwd=tmp_path), 2)
     assert told == "There is no settings file vanner.toml; make one with: vanner init"
@@ -149,6 +150,7 @@ def test_every_fault_of_the_settings_is_a_line_of_its_own(vanner, settings):
         ]
 
 
+@pytest.mark.slow
 def test_a_closed_pipe_ends_a_query_without_a_word(shell, town_database, tmp_path):
     endless = "WITH RECURSIVE n(i) AS (SELECT 1 UNION ALL SELECT i + 1 FROM n) SELECT i FROM n"
     query = f'{sys.executable} -m vanner db query -f csv -d {town_database} "{endless}"'
@@ -157,6 +159,7 @@ def test_a_closed_pipe_ends_a_query_without_a_word(shell, town_database, tmp_pat
     assert (tmp_path / "status").read_text() == "1\n"
 
 
+@pytest.mark.slow
 def test_a_full_disk_behind_the_output_gives_a_sentence(shell, town_database):
     query = f'{sys.executable} -m vanner db query -d {town_database} "SELECT 1"'
     *told, status = shell(f"{query} 2>&1 >/dev/full; echo $?").splitlines()

@@ -33,6 +33,7 @@ def test_elsewhere_progress_is_plain_lines_on_stderr(town):
     assert "Reading" not in ended.out
 
 
+@pytest.mark.slow
 def test_a_wish_for_colour_puts_no_control_characters_into_a_pipe(
     process, write_archive, few_lines
 ):

@@ -128,6 +128,7 @@ def test_a_title_with_square_brackets_stands_as_it_is(query):
     assert "Ferry [aground] off Möwenhook 海" in query("SELECT headline FROM alerts").out
 
 
+@pytest.mark.slow
 def test_on_a_terminal_a_long_cell_is_folded_and_not_cut(terminal, town_database):
     sql = "SELECT printf('%.*c', 90, 'x') AS a, '[red]' AS \"[b]\""
     status, drawn = terminal("db", "query", "-d", town_database, sql, columns=60)
@@ -179,6 +180,7 @@ def test_wrong_sql_is_one_sentence(query, sql, named):
     assert any(one in ended.err for one in named.split("|"))
 
 
+@pytest.mark.slow
 def test_ctrl_c_ends_a_query_that_would_take_for_ever(start, town_database):
     # Many rows at once, which show that the query runs, then one that takes for ever.
     endless = (

@@ -151,6 +151,7 @@ def test_the_budget_and_the_time_zone_reach_the_desk(vanner, write_archive, few_
     assert (parameters["alerts_per_day"], parameters["zone"]) == (2.5, "Europe/Vienna")
 
 
+@pytest.mark.slow
 def test_ctrl_c_while_taking_in_is_told_and_exits_with_130(start, few_lines, tmp_path):
     os.mkfifo(tmp_path / "pipe")
     running = start("replay", "pipe", "-d", "try.db")

@@ -41,6 +41,7 @@ def test_the_overview_names_every_command_and_cuts_none_of_its_sentences(vanner)
     assert all(words[-1].endswith(".") and not words[-1].endswith("..") for words in named)
 
 
+@pytest.mark.slow
 def test_version_is_printed_by_a_real_process(process):
     ended = process("--version")
     assert (ended.status, ended.out, ended.err) == (0, f"vanner {__version__}\n", "")
@@ -70,6 +71,7 @@ def test_wrong_usage_is_one_sentence_that_points_to_the_help(vanner, case):
     assert named in ended.err
 
 
+@pytest.mark.slow
 def test_wrong_usage_of_a_real_process_exits_with_two(process):
     ended = process("replay")
     assert (ended.status, ended.out) == (2, "")
