@@ -62,7 +62,7 @@ def _backgrounds(model, now_s):
 
 
 @given(items=ITEMS)
-@settings(max_examples=60, deadline=None)
+@settings(max_examples=40, deadline=None)
 def test_without_decay_many_pulses_leave_the_backgrounds_of_a_single_one(items):
     timed, now_s = _timed(items)
     streamed, batch = _desk(ENDLESS_S, ENDLESS_S), _desk(ENDLESS_S, ENDLESS_S)
@@ -75,7 +75,7 @@ def test_without_decay_many_pulses_leave_the_backgrounds_of_a_single_one(items):
 
 
 @given(items=ITEMS)
-@settings(max_examples=60, deadline=None)
+@settings(max_examples=40, deadline=None)
 def test_with_decay_counts_are_the_sum_of_every_words_own_weight(items):
     timed, now_s = _timed(items)
     model = _desk(28 * DAY_S, DAY_S)
@@ -93,7 +93,7 @@ def test_with_decay_counts_are_the_sum_of_every_words_own_weight(items):
 
 
 @given(items=ITEMS, later_days=st.floats(0.0, 200.0))
-@settings(max_examples=60, deadline=None)
+@settings(max_examples=40, deadline=None)
 def test_backgrounds_sum_to_one_over_seen_and_unseen_words(items, later_days):
     timed, now_s = _timed(items)
     model = _desk(28 * DAY_S, DAY_S)
@@ -112,7 +112,7 @@ def test_backgrounds_sum_to_one_over_seen_and_unseen_words(items, later_days):
 
 
 @given(late_days=st.floats(0.0, 300.0), words=WORDS.filter(bool))
-@settings(max_examples=60, deadline=None)
+@settings(max_examples=40, deadline=None)
 def test_a_late_item_leaves_what_it_would_have_left_on_its_day(late_days, words):
     prompt, late = _desk(28 * DAY_S, DAY_S), _desk(28 * DAY_S, DAY_S)
     before = _item(1, {"word0": 3}, START_S)

@@ -96,9 +96,9 @@ def test_a_change_of_the_clock_makes_no_digest_twice_and_leaves_none_out(
     begin_s = parse_iso(begin)
     plans = [plan(zone="Europe/Berlin", schedules=(cron,), recipients=MAIL)]
     database, whole = open_database("often.db"), open_database("whole.db")
-    for quarter in range(1, 20):  # a restart every quarter of an hour
-        _go_on(database, plans, begin_s + quarter * 900.0, begin_s)
-    _go_on(whole, plans, begin_s + 19 * 900.0, begin_s)
+    for part in range(1, 12):  # a restart every 25 minutes
+        _go_on(database, plans, begin_s + part * 1500.0, begin_s)
+    _go_on(whole, plans, begin_s + 11 * 1500.0, begin_s)
     told = _told(dump, database)
     assert [row[1][11:16] for row in told] == due
     assert all(before[3] == after[2] for before, after in pairwise(told))
