@@ -168,6 +168,19 @@ def test_a_statement_that_is_refused_undoes_its_whole_block(database):
     assert names(database) == []
 
 
+def test_a_write_holds_the_lock_from_its_beginning(database):
+    """So that what it reads first cannot be outdated when it writes."""
+    with (
+        closing(sqlite3.connect(database.path, timeout=0, isolation_level=None)) as other,
+        database.write() as connection,
+    ):
+        with pytest.raises(sqlite3.OperationalError, match="locked"):
+            other.execute(ADD.format("theirs"))
+        assert connection.exec_driver_sql(NAMES).fetchall() == []
+        connection.exec_driver_sql(ADD.format("ours"))
+    assert names(database) == ["ours"]
+
+
 def test_a_reader_cannot_write(database):
     with pytest.raises(DatabaseError, match="cannot be written"), database.read() as connection:
         connection.exec_driver_sql(ADD.format("quay-wire"))
