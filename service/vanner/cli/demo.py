@@ -27,7 +27,7 @@ from vanner.store.overview import counts, item_count
 
 _QUERIES = (
     "SELECT raised_at, desk, headline, items, sources FROM alerts ORDER BY raised_at",
-    "SELECT term, bits, seen, expected FROM alert_terms WHERE alert_id = 1 ORDER BY bits DESC",
+    "SELECT term, bits, seen FROM alert_terms WHERE alert_id = (SELECT max(alert_id) FROM alerts)",
     "SELECT hour, items FROM term_hours WHERE term = 'harbour' ORDER BY hour DESC LIMIT 24",
 )
 

@@ -9,7 +9,7 @@ from dataclasses import dataclass, field, replace
 from vanner.daemon.plan import DeskPlan, is_away, pack_plan, unpack_plan
 from vanner.errors import DatabaseError
 from vanner.model.desk import DeskModel, PulseResult, TermItem
-from vanner.model.state import STATE_VERSION, StateVersionError, pack, retune, unpack
+from vanner.model.state import STATE_VERSION, StateError, pack, retune, unpack
 from vanner.records import StoredItem
 from vanner.store.checkpoints import Checkpoint, checkpoint_of, keep_checkpoint
 from vanner.store.database import Database
@@ -98,9 +98,10 @@ def restored_desk(
     earlier = unpack_plan(saved.parameters)
     try:
         model = unpack(saved.state, earlier.parameters)
-    except StateVersionError as error:
+    except StateError as error:
         raise DatabaseError(
-            f"The database {database.path} holds {error}; run `vanner rebuild` to derive it again."
+            f"The database {database.path} holds {error} of desk {plan.desk}; "
+            "run `vanner rebuild` to derive it again."
         ) from error
     if is_away(saved.parameters):
         # What passed meanwhile is not the desk's; it goes on from where it left.

@@ -46,7 +46,8 @@ class DigestBook:
     def next(self, limit_s: float) -> Due | None:
         """The earliest slot up to a time that is not done, or None."""
         while not self._waiting and self._known_until_s < limit_s and self._plans:
-            until_s = min(limit_s, self._known_until_s + _LOOK_AHEAD_S)
+            # Beyond the limit too, so that a cron text is not walked again at every pulse.
+            until_s = self._known_until_s + _LOOK_AHEAD_S
             self._waiting = [
                 (plan, cron, slot)
                 for plan, cron in self._plans
@@ -77,7 +78,7 @@ def make_digest(
         withheld: Keep the mail for the record only.
     """
     started_s = desk_starts(connection).get(plan.desk, slot.scheduled_s)
-    if slot.scheduled_s < started_s or has_slot(connection, plan.desk, schedule, slot.local):
+    if slot.scheduled_s <= started_s or has_slot(connection, plan.desk, schedule, slot.local):
         return
     earlier_s = last_slot_s(connection, plan.desk, schedule)
     from_s = started_s if earlier_s is None else earlier_s

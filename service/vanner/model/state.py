@@ -9,6 +9,7 @@ from __future__ import annotations
 
 import io
 import json
+import zipfile
 from collections import deque
 from dataclasses import asdict
 from typing import Any
@@ -23,8 +24,8 @@ from vanner.model.windows import WindowItem
 STATE_VERSION = 1
 
 
-class StateVersionError(ValueError):
-    """The state was written in a format that this version does not know."""
+class StateError(ValueError):
+    """The state is damaged, or written in a format that this version does not know."""
 
 
 def pack_parameters(parameters: DeskParameters) -> str:
@@ -109,13 +110,22 @@ def unpack(state: bytes, parameters: DeskParameters) -> DeskModel:
     """A desk from its saved state and the parameters under which that was made.
 
     Raises:
-        StateVersionError: Another version's format.
+        StateError: Another version's format, or no state at all.
     """
+    try:
+        return _unpacked(state, parameters)
+    except (zipfile.BadZipFile, EOFError, OSError, KeyError, TypeError, ValueError) as error:
+        if isinstance(error, StateError):
+            raise
+        raise StateError("a damaged model state") from error
+
+
+def _unpacked(state: bytes, parameters: DeskParameters) -> DeskModel:
     with np.load(io.BytesIO(state), allow_pickle=False) as arrays:
         facts = json.loads(bytes(arrays["facts"]))
         if facts["version"] != STATE_VERSION:
-            raise StateVersionError(
-                f"model state of version {facts['version']}, this program knows {STATE_VERSION}"
+            raise StateError(
+                f"a model state of version {facts['version']} (this program knows {STATE_VERSION})"
             )
         model = DeskModel(parameters)
         model.terms = facts["terms"]

@@ -107,7 +107,9 @@ class StoryBook:
         ]
         self._begin(rest, own_terms, now_s, levels, changed)
         for story in changed.values():
-            if story.raised_s is None and self._passes(story, levels):
+            # Raised by something new: not by a threshold that has sunk since its last item.
+            fresh = story.last_activity_s == now_s
+            if fresh and story.raised_s is None and self._passes(story, levels):
                 story.raised_s = now_s
                 story.threshold_bits = max(levels.floor_bits, levels.ceiling_bits)
         return [changed[number] for number in sorted(changed)]

@@ -41,6 +41,18 @@ def test_digests_follow_each_other_without_gap_or_overlap_from_the_desks_start(
     assert all(before[3] == after[2] for before, after in pairwise(told))
 
 
+def test_a_desk_that_begins_at_a_slot_has_its_first_digest_at_the_next(open_database, dump, plan):
+    database = open_database()
+    begin_s = parse_iso("2024-01-10T06:00:00Z")
+    engine = Engine(database, [plan(schedules=("0 * * * *",))], 60.0)
+    engine.begin(begin_s)
+    engine.advance(begin_s + 2 * HOUR_S)
+    assert [due for _, due, _, _ in _told(dump, database)] == [
+        "2024-01-10T07:00:00Z",
+        "2024-01-10T08:00:00Z",
+    ]
+
+
 def test_restarts_before_at_and_after_a_slot_make_its_digest_and_mail_once(
     open_database, dump, plan
 ):

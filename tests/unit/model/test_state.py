@@ -9,7 +9,7 @@ import pytest
 from vanner.model.desk import DeskModel
 from vanner.model.state import (
     STATE_VERSION,
-    StateVersionError,
+    StateError,
     pack,
     pack_parameters,
     retune,
@@ -80,8 +80,23 @@ def test_a_state_of_another_version_is_refused_by_name(parameters, version):
     arrays["facts"] = np.frombuffer(json.dumps(facts).encode(), dtype=np.uint8)
     changed = io.BytesIO()
     np.savez(changed, **arrays)
-    with pytest.raises(StateVersionError, match=rf"version {version}\b.*knows {STATE_VERSION}"):
+    with pytest.raises(StateError, match=rf"version {version}\b.*knows {STATE_VERSION}"):
         unpack(changed.getvalue(), parameters())
+
+
+@pytest.mark.parametrize("state", [b"", b"no archive", b"PK\x03\x04 cut short"])
+def test_a_damaged_state_is_refused_as_that(parameters, state):
+    with pytest.raises(StateError, match="damaged"):
+        unpack(state, parameters())
+
+
+def test_a_state_that_is_cut_short_anywhere_is_refused(parameters, term_item):
+    model = DeskModel(parameters())
+    model.step(START_S, [term_item(1, "quay gull", START_S)])
+    whole = pack(model)
+    for length in range(0, len(whole), 97):
+        with pytest.raises(StateError):
+            unpack(whole[:length], parameters())
 
 
 def test_parameters_are_kept_to_the_bit(parameters):

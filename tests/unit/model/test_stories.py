@@ -205,6 +205,21 @@ def test_a_story_must_pass_the_ceiling_with_both_its_terms(ceiling_bits, raised)
     assert (story.raised_s is not None) is raised
 
 
+def test_a_story_is_not_raised_by_a_threshold_that_sank_since_its_last_item():
+    high = Levels(join_bits=6.0, floor_bits=10.0, ceiling_bits=50.0, noted_bits=6.0)
+    own_terms = _held_by_all({ICE, PIER}, 1, 2, 3)
+    book, (story,) = _begun(
+        _candidate(ICE, 20.0, 1, 2), _candidate(PIER, 15.0, 1, 2), own_terms=own_terms, levels=high
+    )
+    later_s = NOW_S + 3600.0
+    # Only the evidence is counted anew; no item is.
+    stronger = [_candidate(ICE, 21.0, 1, 2)]
+    (same,) = _update(book, stronger, own_terms, arrivals=[], now_s=later_s)
+    assert (same is story, story.raised_s) == (True, None)
+    _update(book, [], own_terms, arrivals=[3], now_s=later_s + PULSE_S)
+    assert story.raised_s == later_s + PULSE_S
+
+
 def test_the_headline_is_of_the_item_with_most_of_the_storys_bits_until_it_is_raised():
     book, (story,) = _begun(
         _candidate(ICE, 9.0, 1, 2, 3),
