@@ -8,10 +8,11 @@ from alembic import command
 from alembic.autogenerate import compare_metadata
 from alembic.config import Config
 from alembic.runtime.migration import MigrationContext
+from alembic.script import ScriptDirectory
 from sqlalchemy import create_engine
 
 from vanner.store.database import Database
-from vanner.store.migrate import migrations_folder
+from vanner.store.migrate import known_revisions, migrations_folder
 from vanner.store.schema import metadata
 
 # The design, section 6: the views that users may rely on, with their columns in order.
@@ -114,3 +115,11 @@ def test_a_downgrade_is_refused_and_changes_nothing(migrated):
             command.downgrade(config, "base")
     engine.dispose()
     assert migrated.read_bytes() == before
+
+
+def test_revisions_told_from_file_names_are_those_that_alembic_walks():
+    config = Config()
+    config.set_main_option("script_location", str(migrations_folder()))
+    config.set_main_option("path_separator", "os")
+    walked = ScriptDirectory.from_config(config).walk_revisions()
+    assert known_revisions() == tuple(script.revision for script in walked)
