@@ -16,7 +16,7 @@ from functools import partial
 
 import structlog
 from apscheduler.executors.pool import ThreadPoolExecutor
-from apscheduler.jobstores.base import ConflictingIdError
+from apscheduler.jobstores.base import ConflictingIdError, JobLookupError
 from apscheduler.schedulers import SchedulerNotRunningError
 from apscheduler.schedulers.background import BackgroundScheduler
 
@@ -33,6 +33,23 @@ log = structlog.get_logger()
 _AFTER_CLOSE_S = 0.02  # so that the job never runs a hair before the pulse has ended
 _RETRY_S = 5.0  # after a database that refused
 _STOP_WAIT_S = 8.0
+# A turn sets its next one before it has quite ended. Were only one instance allowed, a next one
+# that is due at once (a pulse that took longer than a pulse) could be dropped, and the job with
+# it for good. Two turns of a job never work side by side all the same: see the locks.
+_INSTANCES = 100
+_POLLS, _OWN = "polls", "own"  # the pools of threads
+
+
+class _Scheduler(BackgroundScheduler):  # type: ignore[misc]  # the library has no types
+    """A scheduler that can be stopped amid its work.
+
+    The library's loop looks for its job in the wrong place once a stop has begun, and would
+    end with a traceback.
+    """
+
+    def _main_loop(self) -> None:
+        with suppress(JobLookupError):
+            super()._main_loop()
 
 
 class Service:
@@ -61,10 +78,18 @@ class Service:
         ]
         self._stopping = threading.Event()
         self._working = threading.Lock()
-        threads = ThreadPoolExecutor(max_workers=min(32, len(self._pollers) + 2))
-        self._scheduler = BackgroundScheduler(
-            executors={"default": threads},
-            job_defaults={"misfire_grace_time": None, "coalesce": True, "max_instances": 1},
+        self._posting = threading.Lock()
+        self._scheduler = _Scheduler(
+            executors={
+                _POLLS: ThreadPoolExecutor(max_workers=min(32, len(self._pollers) + 1)),
+                # Threads of their own: polls that hang, however many, hold no pulse up.
+                _OWN: ThreadPoolExecutor(max_workers=2),
+            },
+            job_defaults={
+                "misfire_grace_time": None,
+                "coalesce": True,
+                "max_instances": _INSTANCES,
+            },
             timezone=UTC,
         )
 
@@ -83,10 +108,10 @@ class Service:
         self._at(now_s, "pulse", self._pulse)  # at once: something may have waited
         self._at(now_s, "post", self._post)
         for poller in self._pollers:
-            self._at(now_s, f"poll {poller.source.name}", partial(self._poll, poller))
+            self._at(now_s, f"poll {poller.source.name}", partial(self._poll, poller), _POLLS)
         log.info("service_started", sources=len(self._pollers), desks=len(self._engine.plans))
 
-    def _at(self, time_s: float, name: str, work: Callable[[], None]) -> None:
+    def _at(self, time_s: float, name: str, work: Callable[[], None], threads: str = _OWN) -> None:
         if self._stopping.is_set():
             return
         # The scheduler has ended between the check and the call: then nothing is to be done.
@@ -96,6 +121,7 @@ class Service:
                 "date",
                 run_date=datetime.fromtimestamp(time_s, UTC),
                 id=name,
+                executor=threads,
                 replace_existing=True,
             )
 
@@ -117,12 +143,16 @@ class Service:
             self._at(self._clock(), "post", self._post)
 
     def _post(self) -> None:
+        if not self._posting.acquire(blocking=False):
+            return  # a round is under way; the next pulse brings another
         try:
             self._postman.round()
         except VannerError as error:
             log.error("post_failed", reason=str(error))  # noqa: TRY400 - users get a sentence
         except Exception:
             log.exception("post_failed")
+        finally:
+            self._posting.release()
 
     def _poll(self, poller: Poller) -> None:
         next_s: float | None = self._clock() + max(poller.every_s, _RETRY_S)
@@ -137,7 +167,7 @@ class Service:
                 log.warning("source_stopped", source=poller.source.name)
             else:
                 name = f"poll {poller.source.name}"
-                self._at(next_s, name, partial(self._poll, poller))
+                self._at(next_s, name, partial(self._poll, poller), _POLLS)
 
     def stop(self) -> None:
         """Finish the pulse that is being committed, save the models' state, end the jobs."""
