@@ -36,7 +36,9 @@ def database(past, tmp_path_factory) -> Path:
     faults: list[str] = []
     try:
         items = archive_items([past.path], faults.append)
-        accepted = accept_archive(database, items, "harbour", faults.append, lambda _number: None)
+        accepted = accept_archive(
+            database, items, "harbour", 2e9, faults.append, lambda _number: None
+        )
         replay(database, plans_from(settings), lambda _progress: None)
     finally:
         database.close()

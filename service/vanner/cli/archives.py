@@ -114,7 +114,7 @@ def replay_command(
         faults = Faults()
         with progress("Taking in", None) as bar:
             items = archive_items(archives, faults)
-            accept_archive(target, items, _source_of(archives[0]), faults, bar)
+            accept_archive(target, items, _source_of(archives[0]), now_s(), faults, bar)
         faults.close()
         with progress("Reading", item_count(target)) as bar:
             end_s = replay(target, (plan,), lambda done: bar(done.items))
@@ -174,7 +174,7 @@ def import_command(
         faults = Faults()
         with progress("Importing", None) as bar:
             items = _without_source(archive_items(archives, faults))
-            accepted = teach(database, items, source, now_s, faults, bar)
+            accepted = teach(database, items, source, told.service.pulse, now_s, faults, bar)
         faults.close()
         when = "at the next pulse" if is_served(database.path) else "when the daemon starts"
         say(

@@ -11,6 +11,7 @@ from vanner.daemon.engine import Engine, Progress
 from vanner.daemon.plan import DeskPlan
 from vanner.errors import DatabaseError, InputError, RejectedItemError
 from vanner.intake import take_in
+from vanner.intake.fields import date_of
 from vanner.records import Item, RawItem
 from vanner.sources.archive import ArchiveFault, read_archive
 from vanner.store.accept import Accepted, accept, receive_time_s
@@ -21,6 +22,7 @@ from vanner.store.source_states import register
 
 REPLAY, DEMO = "replay", "demo"  # databases that may be made anew without asking
 _BATCH = 1000
+BATCHES_A_PULSE = 2  # of taught items
 _PULSES_PER_COMMIT = 200
 _PULSES_PER_CHECKPOINT = 1_000_000  # a replay that is broken off is begun anew
 
@@ -63,6 +65,7 @@ def accept_archive(
     database: Database,
     raw_items: Iterable[RawItem],
     default_source: str,
+    now_s: float,
     on_fault: Callable[[str], None],
     on_items: Callable[[int], None],
 ) -> Accepted:
@@ -72,11 +75,12 @@ def accept_archive(
         database: A new database.
         raw_items: In any order.
         default_source: For items that name none.
+        now_s: Dates beyond it are no dates of an archive.
         on_fault: Told each item that is left out, in a sentence.
         on_items: Told how many more items were accepted.
     """
     total = Accepted()
-    taken = _taken_in(raw_items, default_source, on_fault)
+    taken = _taken_in(raw_items, default_source, now_s, on_fault)
     while batch := list(islice(taken, _BATCH)):
         with database.write() as connection:
             register(connection, sorted({(item.source, "archive") for item in batch}))
@@ -86,10 +90,13 @@ def accept_archive(
 
 
 def _taken_in(
-    raw_items: Iterable[RawItem], default_source: str, on_fault: Callable[[str], None]
+    raw_items: Iterable[RawItem],
+    default_source: str,
+    now_s: float,
+    on_fault: Callable[[str], None],
 ) -> Iterator[Item]:
     for raw in raw_items:
-        if raw.published_s is None:
+        if raw.published_s is None or not date_of(raw.published_s, now_s)[1]:
             on_fault(f'item "{raw.guid}": no usable date ({raw.date_raw}); it is left out.')
             continue
         try:
@@ -137,15 +144,19 @@ def teach(
     database: Database,
     raw_items: Iterable[RawItem],
     source: str,
+    pulse_s: float,
     now_s: Callable[[], float],
     on_fault: Callable[[str], None],
     on_items: Callable[[int], None],
 ) -> Accepted:
     """Accept an archive's items into a service's database so that they only teach.
 
-    A running daemon reads them when its pulse closes; otherwise the next one to start does.
+    A daemon, running or started later, reads so many a pulse: each batch counts as received a
+    pulse after the one before, so that no pulse is too long for its memory or for others that
+    want to write.
     """
     total = Accepted()
+    ahead_s = 0.0
 
     def kept() -> Iterator[Item]:
         for raw in raw_items:
@@ -157,7 +168,8 @@ def teach(
     taken = kept()
     while batch := list(islice(taken, _BATCH)):
         with database.write() as connection:
-            received_s = receive_time_s(connection, now_s())
+            received_s = receive_time_s(connection, now_s()) + ahead_s
             total += accept(connection, batch, received_s, teaches=True)
+        ahead_s += pulse_s / BATCHES_A_PULSE
         on_items(len(batch))
     return total

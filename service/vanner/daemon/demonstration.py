@@ -63,7 +63,8 @@ def take_in_archive(
     """Accept the two weeks' items; how many they are."""
     faults: list[str] = []
     raw_items = demo_archive(start_s, DAYS, random_state)
-    return accept_archive(database, raw_items, "demo", faults.append, on_items).new
+    end_s = start_s + DAYS * DAY_S
+    return accept_archive(database, raw_items, "demo", end_s, faults.append, on_items).new
 
 
 def replay_archive(database: Database, on_pulse: Callable[[Progress], None]) -> None:

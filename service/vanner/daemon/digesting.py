@@ -17,8 +17,8 @@ from vanner.store.digest_content import (
     cleared_between,
     has_slot,
     keep_digest,
-    last_slot_s,
     latest_digest,
+    latest_slot_s,
     noted_between,
     raised_between,
     volumes_between,
@@ -80,7 +80,7 @@ def make_digest(
     started_s = desk_starts(connection).get(plan.desk, slot.scheduled_s)
     if slot.scheduled_s <= started_s or has_slot(connection, plan.desk, schedule, slot.local):
         return
-    earlier_s = last_slot_s(connection, plan.desk, schedule)
+    earlier_s = latest_slot_s(connection, plan.desk, slot.scheduled_s)
     from_s = started_s if earlier_s is None else earlier_s
     content = _content(connection, plan, schedule, slot, from_s)
     composed = compose_digest(content, plan.zone)

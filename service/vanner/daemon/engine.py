@@ -9,7 +9,6 @@ from __future__ import annotations
 from collections.abc import Callable, Sequence
 from contextlib import closing
 from dataclasses import dataclass
-from itertools import islice
 from typing import TYPE_CHECKING
 
 import structlog
@@ -43,6 +42,15 @@ log = structlog.get_logger()
 # A restart derives at most so many pulses again, and none after one with very many items.
 PULSES_PER_CHECKPOINT = 60
 ITEMS_FOR_CHECKPOINT = 2000
+
+
+@dataclass(frozen=True, slots=True)
+class Step:
+    """What a desk concluded, to be written; `revised` are items that it may have read before."""
+
+    desk: Desk
+    result: PulseResult
+    revised: frozenset[int]
 
 
 @dataclass(frozen=True, slots=True)
@@ -153,73 +161,85 @@ class Engine:
         more, read_s = True, self.read_s
         with closing(self._timeline.events(self.read_s, end_s)) as events:
             while more and not stopping():
-                shown = []
+                told: list[Progress] = []
+                number = 0
+                # The first event of a transaction is computed before the lock is taken, so that
+                # a service, which commits each by itself, holds it for writing only.
+                event = next(events, None)
+                computed = self._compute(event)
                 with self.database.write() as connection:
-                    for event in islice(events, self.pulses_per_commit):
-                        shown.append(self._handle(connection, event))
+                    while event is not None:
+                        told += self._write(connection, event, computed)
                         # A desk that returns may first clear stories of an earlier time.
                         read_s = max(read_s, event.end_s)
-                    more = len(shown) == self.pulses_per_commit
+                        number += 1
+                        if number == self.pulses_per_commit:
+                            break
+                        event = next(events, None)
+                        computed = self._compute(event)
+                    more = event is not None
                     read_s = read_s if more else end_s
                     mark_read(connection, read_s)
-                for progress in shown:
-                    if progress is not None and on_pulse is not None:
-                        on_pulse(progress)
+                self._tell(told, on_pulse)
         return read_s
 
-    def _handle(self, connection: Connection, event: PulseEvent | DigestEvent) -> Progress | None:
-        if isinstance(event, DigestEvent):
-            make_digest(
-                connection, event.plan, event.schedule, event.slot, withheld=self.withhold_mail
-            )
-            return None
-        raised = self._pulse(connection, event)
-        self._pulses_since += 1
-        if (
-            self._pulses_since >= self.pulses_per_checkpoint
-            or len(event.items) >= ITEMS_FOR_CHECKPOINT
-        ):
-            self._keep_states(connection, event.end_s)
-        return Progress(event.end_s, len(event.items), raised)
-
-    def _pulse(self, connection: Connection, event: PulseEvent) -> tuple[StoryLine, ...]:
+    def _compute(self, event: PulseEvent | DigestEvent | None) -> list[Step]:
+        """What every desk makes of a pulse. The models move on; nothing is written yet."""
+        if not isinstance(event, PulseEvent):
+            return []
         counted = list(zip(event.items, term_items(event.items), strict=True))
-        raised: list[StoryLine] = []
+        steps = []
         for desk in self.desks:
             if event.end_s <= desk.started_s:
                 continue
             mine = [terms for item, terms in counted if desk.plan.reads(item.source)]
             due_s = desk.model.next_clearing_s()
             if mine or (due_s is not None and due_s <= event.end_s):
-                revised = [one.item_id for one in mine if one.revision > 1]
-                for result in step(desk.model, event.end_s, mine):
-                    raised += self._keep(connection, desk, result, revised, event.end_s)
-        return tuple(raised)
+                revised = frozenset(one.item_id for one in mine if one.revision > 1)
+                steps += [
+                    Step(desk, result, revised) for result in step(desk.model, event.end_s, mine)
+                ]
+        return steps
 
-    def _keep(
-        self,
-        connection: Connection,
-        desk: Desk,
-        result: PulseResult,
-        revised: Sequence[int],
-        end_s: float,
-    ) -> list[StoryLine]:
-        plan, ids = desk.plan, desk.story_ids
-        keep_readings(connection, plan.desk, result.readings, revised)
-        keep_stories(connection, plan.desk, result.stories, end_s, ids)
+    def _write(
+        self, connection: Connection, event: PulseEvent | DigestEvent, steps: Sequence[Step]
+    ) -> list[Progress]:
+        if isinstance(event, DigestEvent):
+            make_digest(
+                connection, event.plan, event.schedule, event.slot, withheld=self.withhold_mail
+            )
+            return []
+        raised = [line for one in steps for line in self._keep(connection, one, event.end_s)]
+        self._pulses_since += 1
+        due = self._pulses_since >= self.pulses_per_checkpoint
+        if due or len(event.items) >= ITEMS_FOR_CHECKPOINT:
+            self._keep_states(connection, event.end_s)
+        return [Progress(event.end_s, len(event.items), tuple(raised))]
+
+    def _keep(self, connection: Connection, one: Step, end_s: float) -> list[StoryLine]:
+        plan, ids = one.desk.plan, one.desk.story_ids
+        keep_readings(connection, plan.desk, one.result.readings, one.revised)
+        keep_stories(connection, plan.desk, one.result.stories, end_s, ids)
         raised = [
             story_line(connection, ids[story.number], end_s)
-            for story in result.stories
+            for story in one.result.stories
             if story.raised_s == end_s
         ]
-        for line in raised:
-            log.info(
-                "alert_raised", desk=plan.desk, alert_id=line.story_id, bits=round(line.bits, 1)
-            )
-            if plan.mails_alerts and plan.recipients:
+        if plan.mails_alerts and plan.recipients:
+            for line in raised:
                 mail = compose_alert(line, plan.zone, plan.recipients, end_s)
                 queue(connection, mail, withheld=self.withhold_mail)
         return raised
+
+    @staticmethod
+    def _tell(told: Sequence[Progress], on_pulse: Callable[[Progress], None] | None) -> None:
+        """Log and show what was committed; never before, for it might be rolled back."""
+        for progress in told:
+            for line in progress.raised:
+                bits = round(line.bits, 1)
+                log.info("alert_raised", desk=line.desk, alert_id=line.story_id, bits=bits)
+            if on_pulse is not None:
+                on_pulse(progress)
 
     def _keep_states(self, connection: Connection, at_s: float) -> None:
         for desk in self.desks:

@@ -14,7 +14,8 @@ from dataclasses import dataclass, field
 
 import numpy as np
 
-DAY_S = 86400.0
+from vanner.clock import DAY_S
+
 CEILING_DAYS = 14.0
 # The number of tests a day is itself a decayed count, so that a desk's growth is followed.
 TESTS_HALF_LIFE_S = 7 * DAY_S

@@ -87,6 +87,7 @@ class DeskModel:
     own_terms: dict[int, dict[int, float]] = field(default_factory=dict)
     words: int = 0
     oldest_s: float | None = None
+    begun_s: float | None = None
 
     def __post_init__(self) -> None:
         """Begin with empty backgrounds; `state` fills a loaded desk afterwards."""
@@ -119,9 +120,11 @@ class DeskModel:
             return True
         if self.oldest_s is None:
             return False
-        told, age_s = self.parameters, now_s - self.oldest_s
-        enough = age_s >= told.warm_up_s and self.words >= told.warm_up_words
-        return enough or age_s >= told.warm_up_at_most_s
+        told = self.parameters
+        enough = now_s - self.oldest_s >= told.warm_up_s and self.words >= told.warm_up_words
+        # From the first arrival: an old date among the first entries is no time of learning.
+        begun_s = now_s if self.begun_s is None else self.begun_s
+        return enough or now_s - begun_s >= told.warm_up_at_most_s
 
     def step(self, now_s: float, items: Sequence[TermItem]) -> PulseResult:
         """Read a pulse's items, fold them in, test what arrived, tell the stories.
@@ -173,6 +176,7 @@ class DeskModel:
         self.standing.fold_in(terms, counts, times, now_s)
         self.running.fold_in(terms, counts, times, now_s)
         self.words += int(counts.sum())
+        self.begun_s = now_s if self.begun_s is None else self.begun_s
         oldest_s = min(read.item.published_s for read in reads)
         self.oldest_s = oldest_s if self.oldest_s is None else min(self.oldest_s, oldest_s)
 

@@ -53,6 +53,7 @@ def pack(model: DeskModel) -> bytes:
         "terms": model.terms,
         "words": model.words,
         "oldest_s": model.oldest_s,
+        "begun_s": model.begun_s,
         "own_terms": {str(i): list(terms) for i, terms in model.own_terms.items()},
         "landmarks": decays,
         "windows": _pack_windows(model, items),
@@ -131,6 +132,7 @@ def _unpacked(state: bytes, parameters: DeskParameters) -> DeskModel:
         model.terms = facts["terms"]
         model.vocabulary = {term: number for number, term in enumerate(model.terms)}
         model.words, model.oldest_s = facts["words"], facts["oldest_s"]
+        model.begun_s = facts["begun_s"]
         model.own_terms = {
             int(i): dict.fromkeys(terms, 1.0) for i, terms in facts["own_terms"].items()
         }

@@ -12,10 +12,10 @@ from dataclasses import dataclass, field
 
 import numpy as np
 
+from vanner.clock import HOUR_S
 from vanner.model.decay import Decay, DecayedCounts, Floats, Ints
 from vanner.model.surprise import season_rate, surprise_bits
 
-HOUR_S = 3600.0
 SPANS_S = (1 * HOUR_S, 6 * HOUR_S, 24 * HOUR_S)
 HISTORY_HALF_LIFE_S = 14 * 24 * HOUR_S
 BANDS = 8  # of three hours each

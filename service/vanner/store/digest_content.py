@@ -36,11 +36,11 @@ class DigestRow:
     body_html: str
 
 
-def last_slot_s(connection: Connection, desk: str, schedule: str) -> float | None:
-    """When a desk's latest digest of a schedule was due, or None."""
+def latest_slot_s(connection: Connection, desk: str, before_s: float) -> float | None:
+    """When a desk's latest digest before a time was due, whatever its schedule, or None."""
     return connection.execute(
         select(func.max(digest.c.scheduled_s)).where(
-            digest.c.desk == desk, digest.c.schedule == schedule
+            digest.c.desk == desk, digest.c.scheduled_s < before_s
         )
     ).scalar()
 

@@ -141,39 +141,28 @@ def keep_readings(
         connection: A write transaction.
         desk: The desk that made them.
         readings: One an item and revision; an item's last one stands.
-        revised: Ids of those items that may have been read before: their earlier reading goes.
+        revised: Items that may have been read before: the earlier reading of one that is among
+            the readings goes.
     """
     if not readings:
         return
     rows = {one.item_id: one for one in readings}
-    for table in (topic, reading) if revised else ():
-        connection.execute(
-            delete(table).where(table.c.desk == desk, table.c.item_id == bindparam("id")),
-            [{"id": item_id} for item_id in revised],
-        )
-    insert_rows(
-        connection,
-        reading,
-        [
-            (
-                desk,
-                one.item_id,
-                one.words,
-                one.standing,
-                one.running,
-                one.house,
-                one.own,
-                one.bits_per_word,
-            )
-            for one in rows.values()
-        ],
-    )
+    again = [{"id": item_id} for item_id in rows if item_id in revised]
+    for table in (topic, reading) if again else ():
+        mine = (table.c.desk == desk) & (table.c.item_id == bindparam("id"))
+        connection.execute(delete(table).where(mine), again)
+    insert_rows(connection, reading, [_reading_row(desk, one) for one in rows.values()])
     topics = [
         (desk, one.item_id, t.term, t.weight, t.own_share, t.count)
         for one in rows.values()
         for t in one.topics
     ]
     insert_rows(connection, topic, topics)
+
+
+def _reading_row(desk: str, one: Reading) -> tuple[object, ...]:
+    shares = (one.standing, one.running, one.house, one.own)
+    return (desk, one.item_id, one.words, *shares, one.bits_per_word)
 
 
 def keep_stories(

@@ -110,7 +110,9 @@ def test_an_archive_of_thousands_of_items_teaches_and_raises_nothing(
         )
         for n in range(2500)
     ]
-    taken = teach(database, archive, "the archive", lambda: EVENT_S, faults.append, counted.append)
+    taken = teach(
+        database, archive, "the archive", 60.0, lambda: EVENT_S, faults.append, counted.append
+    )
     assert (taken.new, sum(counted), faults) == (2500, 2500, [])
     _run(database, [plan()], EVENT_S + 120.0)
     taught = dump(database)
@@ -141,7 +143,9 @@ def test_an_archive_that_names_no_dates_or_nothing_at_all_still_teaches_the_rest
     database = open_database()
     faults = []
     archive = [RawItem("a", "", "tide board"), RawItem("b"), RawItem("c", "Ferry", published_s=1.0)]
-    taken = teach(database, archive, "the archive", lambda: START_S, faults.append, lambda _: None)
+    taken = teach(
+        database, archive, "the archive", 60.0, lambda: START_S, faults.append, lambda _: None
+    )
     assert taken.new == 2
     assert len(faults) == 1
     assert sorted(row[2] for row in dump(database)["items"]) == ["a", "c"]

@@ -151,7 +151,7 @@ def archive(reference):
 
 def _replayed(path, archive, **told):
     database = open_fresh(path)
-    accept_archive(database, archive, "archive", pytest.fail, lambda _: None)
+    accept_archive(database, archive, "archive", 2e9, pytest.fail, lambda _: None)
     end_s = replay(database, [replay_plan(24.0, "UTC", 60.0)], lambda _: None, **told)
     return database, end_s
 
@@ -192,7 +192,7 @@ def test_a_replay_of_nothing_says_so(tmp_path):
 def test_items_without_a_date_are_left_out_of_a_replay_and_named(tmp_path):
     database, faults = open_fresh(tmp_path / "replay.db"), []
     raw = [RawItem("dated", "Tide", published_s=START_S), RawItem("dateless", "Quay")]
-    taken = accept_archive(database, raw, "archive", faults.append, lambda _: None)
+    taken = accept_archive(database, raw, "archive", 2e9, faults.append, lambda _: None)
     database.close()
     assert taken.new == 1
     (fault,) = faults

@@ -11,8 +11,8 @@ from vanner.store.digest_content import (
     cleared_between,
     has_slot,
     keep_digest,
-    last_slot_s,
     latest_digest,
+    latest_slot_s,
     mark_filed,
     noted_between,
     raised_between,
@@ -223,8 +223,9 @@ def test_slots_are_found_by_desk_schedule_and_local_time(database):
             ("harbour", "0 8 * * *", "2025-09-03T10:00"),
         ]:
             assert not has_slot(connection, *other)
-        assert last_slot_s(connection, "harbour", "0 8 * * *") == UNTIL_S
-        assert last_slot_s(connection, "harbour", "0 9 * * *") is None
+        assert latest_slot_s(connection, "harbour", UNTIL_S + 1.0) == UNTIL_S
+        assert latest_slot_s(connection, "harbour", UNTIL_S) is None
+        assert latest_slot_s(connection, "town", UNTIL_S + 1.0) is None
 
 
 def test_the_latest_digest_is_that_of_the_latest_slot(database):
