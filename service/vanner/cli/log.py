@@ -39,7 +39,7 @@ def _renderers(form: str) -> list[structlog.typing.Processor]:
     if form == "json":
         return [
             structlog.processors.format_exc_info,
-            structlog.processors.JSONRenderer(ensure_ascii=False),
+            structlog.processors.JSONRenderer(),
         ]
     colours = sys.stderr.isatty() and not os.environ.get("NO_COLOR")
     return [
