@@ -78,8 +78,10 @@ VIEWS = {
         SELECT t.desk, t.term,
             strftime('%Y-%m-%dT%H:00:00Z', i.received_s, 'unixepoch') AS hour,
             count(*) AS items
-        FROM topic t JOIN item i ON i.item_id = t.item_id
-        WHERE t.own_share >= 0.5
+        FROM topic t
+        JOIN item i ON i.item_id = t.item_id
+        JOIN item_revision r ON r.item_id = i.item_id AND r.revision = 1
+        WHERE t.own_share >= 0.5 AND NOT r.teaches
         GROUP BY t.desk, t.term, hour
     """,
     "source_health": f"""
@@ -187,7 +189,7 @@ def _make_tables() -> None:
         sa.Column("kind", sa.String(length=16), nullable=False),
         sa.Column("cursor", sa.Text(), nullable=False),
         sa.Column("last_polled_s", sa.Float(), nullable=True),
-        sa.Column("next_poll_s", sa.Float(), nullable=True),
+        sa.Column("not_before_s", sa.Float(), nullable=True),
         sa.Column("failures", sa.Integer(), nullable=False),
         sa.Column("last_error", sa.Text(), nullable=True),
         sa.Column("stopped", sa.Text(), nullable=True),

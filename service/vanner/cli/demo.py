@@ -73,9 +73,8 @@ def demo(
         with stop_signals() as stop:
             live_s = run_live(target, seconds, random_state, now_s, stop, _show)
             interrupted = stop.is_set()
-        missed = _conclude(
-            target, outcomes(target, archive_s, live_s, seconds, random_state, now_s())
-        )
+        found = outcomes(target, archive_s, live_s, seconds, random_state, now_s())
+        missed = _conclude(target, found, cut_off=interrupted)
         _offer(target)
     finally:
         target.close()
@@ -92,10 +91,11 @@ def _show(progress_made: Progress) -> None:
         say(f"  {iso_utc(progress_made.end_s)}  [{alert.desk}] {alert.headline}  ({terms})")
 
 
-def _conclude(database: Database, found: list[Outcome]) -> int:
+def _conclude(database: Database, found: list[Outcome], *, cut_off: bool) -> int:
     """Tell what became of the planted stories; how many were not raised."""
     say("\nThe planted stories:")
-    for line in aligned([_row(one) for one in found]):
+    # Those of a live part that was cut off may not even have happened.
+    for line in aligned([_row(one, "-" if cut_off else "MISSED") for one in found]):
         say(f"  {line}")
     missed = sum(one.alert is None for one in found)
     say(
@@ -105,13 +105,13 @@ def _conclude(database: Database, found: list[Outcome]) -> int:
     return missed
 
 
-def _row(one: Outcome) -> tuple[str, ...]:
+def _row(one: Outcome, not_raised: str) -> tuple[str, ...]:
     if one.alert is None or one.alert.raised_s is None:
-        return "MISSED", "", one.story.desk, one.story.name, ""
-    support = (
-        f"{counted(one.alert.item_count, 'item')} of {counted(one.alert.source_count, 'source')}"
-    )
-    return "raised", iso_utc(one.alert.raised_s), one.story.desk, one.story.name, support
+        return not_raised, "", one.story.desk, one.story.name, ""
+    # Minutes are enough here, and leave the line narrow.
+    raised_at = f"{iso_utc(one.alert.raised_s)[:16]}Z"
+    items = counted(one.alert.item_count, "item")
+    return "raised", raised_at, one.story.desk, one.story.name, items
 
 
 def _offer(database: Database) -> None:

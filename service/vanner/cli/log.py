@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
+import io
 import logging
 import os
 import sys
+from contextlib import suppress
 
 import structlog
 
@@ -26,7 +28,7 @@ def set_up_log(form: str, *, quiet: bool = False) -> None:
             logging.WARNING if quiet else logging.INFO
         ),
         # Looked up at each event: while a progress bar is drawn, lines must go above it.
-        logger_factory=lambda *_: structlog.PrintLogger(sys.stderr),
+        logger_factory=lambda *_: structlog.PrintLogger(_StandardError()),
         cache_logger_on_first_use=False,
     )
     # What libraries report joins the same stream, so that every line of it has one form.
@@ -49,6 +51,25 @@ def _renderers(form: str) -> list[structlog.typing.Processor]:
             exception_formatter=structlog.dev.plain_traceback,
         )
     ]
+
+
+class _StandardError(io.StringIO):
+    """Standard error as it is at each line; what it refuses is lost, and nothing else.
+
+    A log on a full disk, or into a pipe whose reader has gone, must not end the work that it
+    tells of.
+    """
+
+    def write(self, text: str) -> int:
+        """Write, or not."""
+        with suppress(OSError, ValueError):
+            sys.stderr.write(text)
+        return len(text)
+
+    def flush(self) -> None:
+        """Flush, or not."""
+        with suppress(OSError, ValueError):
+            sys.stderr.flush()
 
 
 class _LibraryHandler(logging.Handler):

@@ -18,9 +18,10 @@ from vanner.store.source_states import cursor_of, keep_cursor, note_failure, sto
 
 log = structlog.get_logger()
 
-# A source that always has more must not keep its thread for ever: after so many polls in a
-# row it waits for its next turn.
-POLLS_IN_A_ROW = 200
+# A source that has very much must not fill one pulse with all of it, nor keep its thread: after
+# so many polls in a row it waits for a while.
+POLLS_IN_A_ROW = 10
+BACKLOG_WAIT_S = 20.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -83,9 +84,9 @@ class Poller:
             if poll.stopped is not None:
                 return Polled(accepted, faults, None, poll.stopped)
             if not poll.more:
-                break
-        next_s = next_poll_s(self._clock(), self.every_s, 0, self._rng, retry_at_s)
-        return Polled(accepted, faults, next_s)
+                next_s = next_poll_s(self._clock(), self.every_s, 0, self._rng, retry_at_s)
+                return Polled(accepted, faults, next_s)
+        return Polled(accepted, faults, self._clock() + BACKLOG_WAIT_S)
 
     def _accept(self, poll: Poll) -> tuple[Accepted, tuple[str, ...]]:
         items, faults = self.taken_in(poll)
@@ -101,6 +102,7 @@ class Poller:
                 self._clock(),
                 last_error=faults[-1] if faults else poll.stopped,
                 stopped=poll.stopped,
+                not_before_s=poll.retry_at_s,
             )
         for sentence in faults:
             log.warning("item_left_out", source=self.source.name, reason=sentence)
@@ -129,7 +131,9 @@ class Poller:
     def _failed(self, error: SourceError, accepted: Accepted, faults: tuple[str, ...]) -> Polled:
         now_s = self._clock()
         with self.database.write() as connection:
-            failures = note_failure(connection, self.source.name, self.kind, now_s, str(error))
+            failures = note_failure(
+                connection, self.source.name, self.kind, now_s, str(error), error.retry_at_s
+            )
         log.warning("poll_failed", source=self.source.name, failures=failures, reason=str(error))
         next_s = next_poll_s(now_s, self.every_s, failures, self._rng, error.retry_at_s)
         return Polled(accepted, faults, next_s, str(error))

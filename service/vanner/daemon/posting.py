@@ -8,7 +8,7 @@ import structlog
 
 from vanner.daemon.plan import DeskPlan
 from vanner.delivery import send, write_digest
-from vanner.errors import DeliveryError
+from vanner.errors import DatabaseError, DeliveryError
 from vanner.records import Message
 from vanner.settings import MailSettings
 from vanner.store import outbox
@@ -84,15 +84,27 @@ class Postman:
         if message.not_after_s is not None and now_s > message.not_after_s:
             self._mark(message, "stale")
             return
+        offered = False
+
+        def before_data() -> None:
+            nonlocal offered
+            self._mark(message, "sending")
+            offered = True
+
         try:
-            refused = send(
-                message,
-                mail,
-                self._password,
-                before_data=lambda: self._mark(message, "sending"),
-            )
+            refused = send(message, mail, self._password, before_data=before_data)
         except DeliveryError as error:
             self._failed(message, error, now_s)
+            return
+        except DatabaseError:
+            raise
+        except Exception:
+            # One mail that cannot be put together or handed over must not keep the rest back.
+            log.exception("mail_failed", key=message.key)
+            sentence = "The mail could not be sent for a reason that the log shows."
+            self._failed(
+                message, DeliveryError(sentence, final=offered, unconfirmed=offered), now_s
+            )
             return
         self._mark(message, "sent", last_error=_refusal(refused))
         log.info("mail_sent", key=message.key, desk=message.desk, refused=len(refused))

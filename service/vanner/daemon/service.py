@@ -20,13 +20,14 @@ from apscheduler.jobstores.base import ConflictingIdError, JobLookupError
 from apscheduler.schedulers import SchedulerNotRunningError
 from apscheduler.schedulers.background import BackgroundScheduler
 
+from vanner.clock import iso_utc
 from vanner.daemon.engine import Engine, Progress
 from vanner.daemon.polling import Poller
 from vanner.daemon.posting import Postman
 from vanner.errors import VannerError
 from vanner.records import Source
 from vanner.store.database import Database
-from vanner.store.source_states import register
+from vanner.store.source_states import register, resume
 
 log = structlog.get_logger()
 
@@ -102,13 +103,16 @@ class Service:
         self._postman.settle()
         with self._database.write() as connection:
             register(connection, self._kinds)
+            not_before_s = resume(connection, [name for name, _ in self._kinds])
         now_s = self._clock()
         self._engine.begin(now_s)
         self._scheduler.start()
         self._at(now_s, "pulse", self._pulse)  # at once: something may have waited
         self._at(now_s, "post", self._post)
         for poller in self._pollers:
-            self._at(now_s, f"poll {poller.source.name}", partial(self._poll, poller), _POLLS)
+            name = poller.source.name
+            first_s = max(now_s, not_before_s.get(name, now_s))
+            self._at(first_s, f"poll {name}", partial(self._poll, poller), _POLLS)
         log.info("service_started", sources=len(self._pollers), desks=len(self._engine.plans))
 
     def _at(self, time_s: float, name: str, work: Callable[[], None], threads: str = _OWN) -> None:
@@ -128,6 +132,9 @@ class Service:
     def _pulse(self) -> None:
         now_s = self._clock()
         next_s = self._engine.next_end_s(now_s) + _AFTER_CLOSE_S
+        if self._engine.read_s > next_s:
+            # No pulse closes until the clock has caught up; nothing is lost meanwhile.
+            log.warning("clock_set_back", read_until=iso_utc(self._engine.read_s))
         try:
             with self._working:
                 if not self._stopping.is_set():
@@ -155,19 +162,19 @@ class Service:
             self._posting.release()
 
     def _poll(self, poller: Poller) -> None:
-        next_s: float | None = self._clock() + max(poller.every_s, _RETRY_S)
+        name = poller.source.name
         try:
             next_s = poller.turn().next_s
         except VannerError as error:
-            log.error("poll_failed", source=poller.source.name, reason=str(error))  # noqa: TRY400 - users get a sentence
+            log.error("poll_failed", source=name, reason=str(error))  # noqa: TRY400 - users get a sentence
+            next_s = self._clock() + max(poller.every_s, _RETRY_S)
         except Exception:
-            log.exception("poll_failed", source=poller.source.name)
-        finally:
-            if next_s is None:
-                log.warning("source_stopped", source=poller.source.name)
-            else:
-                name = f"poll {poller.source.name}"
-                self._at(next_s, name, partial(self._poll, poller), _POLLS)
+            log.exception("poll_failed", source=name)
+            next_s = self._clock() + max(poller.every_s, _RETRY_S)
+        if next_s is None:
+            log.warning("source_stopped", source=name)
+        else:
+            self._at(next_s, f"poll {name}", partial(self._poll, poller), _POLLS)
 
     def stop(self) -> None:
         """Finish the pulse that is being committed, save the models' state, end the jobs."""

@@ -75,7 +75,7 @@ sources = ["inbox"]
 # Alerts a day that may come of chance alone. Default: a tenth of alerts_per_day
 #false_alerts_per_day = 0.5
 # When digests are due: cron texts of minute hour day month weekday. Default: []
-#digests = ["0 7 * * *", "0 15 * * *", "0 23 * * *"]
+#digests = ["0 7,15,23 * * *"]
 # Mail addresses that get the digests and alerts; needs [mail] below. Default: []
 #recipients = ["desk@newsroom.example"]
 # Whether each alert is mailed at once: true or false. Default: true

@@ -42,7 +42,7 @@ source_state = Table(
     Column("kind", String(16), nullable=False),
     Column("cursor", Text, nullable=False),
     Column("last_polled_s", Float),
-    Column("next_poll_s", Float),
+    Column("not_before_s", Float),
     Column("failures", Integer, nullable=False),
     Column("last_error", Text),
     Column("stopped", Text),

@@ -6,7 +6,7 @@ import json
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from sqlalchemy import Connection, func, select
+from sqlalchemy import Connection, func, select, update
 from sqlalchemy.dialects.sqlite import insert as upsert
 
 from vanner.records import Cursor
@@ -30,8 +30,20 @@ def keep_cursor(
     *,
     last_error: str | None = None,
     stopped: str | None = None,
+    not_before_s: float | None = None,
 ) -> None:
-    """Store a source's next cursor after a poll that succeeded; in its items' transaction."""
+    """Store a source's next cursor after a poll that succeeded; in its items' transaction.
+
+    Args:
+        connection: A write transaction.
+        source: The source's name.
+        kind: Its kind.
+        cursor: What its next poll starts from.
+        polled_s: When it was polled.
+        last_error: What of the poll was left out, if anything.
+        stopped: Why it will not be polled again, or None.
+        not_before_s: Until when the source asked not to be polled, or None.
+    """
     values = {
         "kind": kind,
         "cursor": json.dumps(cursor, sort_keys=True),
@@ -39,6 +51,7 @@ def keep_cursor(
         "failures": 0,
         "last_error": last_error,
         "stopped": stopped,
+        "not_before_s": not_before_s,
     }
     connection.execute(
         upsert(source_state)
@@ -48,7 +61,12 @@ def keep_cursor(
 
 
 def note_failure(
-    connection: Connection, source: str, kind: str, polled_s: float, sentence: str
+    connection: Connection,
+    source: str,
+    kind: str,
+    polled_s: float,
+    sentence: str,
+    not_before_s: float | None = None,
 ) -> int:
     """Note that a poll failed, keeping the cursor; how many have failed in a row."""
     connection.execute(
@@ -60,6 +78,7 @@ def note_failure(
             last_polled_s=polled_s,
             failures=1,
             last_error=sentence,
+            not_before_s=not_before_s,
         )
         .on_conflict_do_update(
             index_elements=["source"],
@@ -68,6 +87,7 @@ def note_failure(
                 "last_polled_s": polled_s,
                 "failures": source_state.c.failures + 1,
                 "last_error": sentence,
+                "not_before_s": not_before_s,
             },
         )
     )
@@ -142,3 +162,17 @@ def source_states(connection: Connection) -> list[SourceState]:
         )
         for row in connection.execute(query)
     ]
+
+
+def resume(connection: Connection, sources: Sequence[str]) -> dict[str, float]:
+    """At a start: poll stopped sources again, whose address may have been corrected.
+
+    Returns:
+        Source -> Unix seconds before which it asked not to be polled, where it did.
+    """
+    mine = source_state.c.source.in_(sources)
+    connection.execute(update(source_state).where(mine).values(stopped=None))
+    query = select(source_state.c.source, source_state.c.not_before_s).where(
+        mine, source_state.c.not_before_s.is_not(None)
+    )
+    return {row.source: row.not_before_s for row in connection.execute(query)}

@@ -153,7 +153,7 @@ def test_every_fault_of_the_settings_is_a_line_of_its_own(vanner, settings):
 @pytest.mark.slow
 def test_a_closed_pipe_ends_a_query_without_a_word(shell, town_database, tmp_path):
     endless = "WITH RECURSIVE n(i) AS (SELECT 1 UNION ALL SELECT i + 1 FROM n) SELECT i FROM n"
-    query = f'{sys.executable} -m vanner db query -f csv -d {town_database} "{endless}"'
+    query = f'"{sys.executable}" -m vanner db query -f csv -d {town_database} "{endless}"'
     assert shell(f"({query}; echo $? >status) 2>err | head -1") == "i\n"
     assert (tmp_path / "err").read_text() == ""
     assert (tmp_path / "status").read_text() == "1\n"
@@ -161,7 +161,7 @@ def test_a_closed_pipe_ends_a_query_without_a_word(shell, town_database, tmp_pat
 
 @pytest.mark.slow
 def test_a_full_disk_behind_the_output_gives_a_sentence(shell, town_database):
-    query = f'{sys.executable} -m vanner db query -d {town_database} "SELECT 1"'
+    query = f'"{sys.executable}" -m vanner db query -d {town_database} "SELECT 1"'
     *told, status = shell(f"{query} 2>&1 >/dev/full; echo $?").splitlines()
     assert (len(told), status) == (1, "1")
     assert "No space left on device" in told[0]

@@ -6,7 +6,7 @@ import random
 import pytest
 from structlog.testing import capture_logs
 
-from vanner.daemon.polling import POLLS_IN_A_ROW, Poller
+from vanner.daemon.polling import BACKLOG_WAIT_S, POLLS_IN_A_ROW, Poller
 from vanner.errors import DatabaseError
 from vanner.records import Poll, RawItem
 from vanner.settings import FeedSettings
@@ -114,7 +114,7 @@ def test_a_source_that_always_has_more_waits_for_its_next_turn(database, poller)
     polled = poller(source).turn()
     assert source.polls == POLLS_IN_A_ROW
     assert polled.accepted == Accepted(new=POLLS_IN_A_ROW)
-    assert NOW_S + EVERY_S <= polled.next_s <= NOW_S + 1.1 * EVERY_S
+    assert polled.next_s == NOW_S + BACKLOG_WAIT_S
     with database.read() as connection:
         assert cursor_of(connection, "endless") == {"number": POLLS_IN_A_ROW}
 
