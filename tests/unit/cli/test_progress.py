@@ -1,6 +1,5 @@
 """Progress: a bar on a terminal, plain lines elsewhere, results on stdout only."""
 
-import os
 import re
 
 import pytest
@@ -33,15 +32,16 @@ def test_elsewhere_progress_is_plain_lines_on_stderr(town):
     assert "Reading" not in ended.out
 
 
-@pytest.mark.slow
 def test_a_wish_for_colour_puts_no_control_characters_into_a_pipe(
-    process, write_archive, few_lines
+    vanner, write_archive, few_lines, monkeypatch
 ):
-    ended = process(
-        "replay", write_archive(few_lines), "-d", "try.db", env=os.environ | {"FORCE_COLOR": "1"}
-    )
-    assert ended.status == 0
+    monkeypatch.setenv("FORCE_COLOR", "1")
+    ended = vanner("replay", write_archive(few_lines), "-d", "try.db")
+    assert (ended.status, ended.err.splitlines()[-1]) == (0, "Reading: 6 of 6")
     assert CONTROL.search(ended.err + ended.out) is None
+    ended = vanner("db", "query", "-d", "try.db", "SELECT title FROM items")
+    assert len(ended.out.splitlines()) == 7
+    assert CONTROL.search(ended.out) is None
 
 
 def test_plain_progress_tells_each_tenth_and_the_end(capsys):
