@@ -126,6 +126,26 @@ def test_two_schedules_of_a_desk_that_meet_have_a_digest_and_a_mail_each(open_da
     assert len(dump(database)["mail"]) == 2
 
 
+def test_digests_of_several_schedules_follow_each_other_and_tell_nothing_twice(
+    open_database, dump, plan
+):
+    database = open_database()
+    schedules = ("0 7 * * *", "0 15 * * *", "0 23 * * *")
+    _go_on(database, [plan(schedules=schedules)], BEGIN_S + 40 * HOUR_S)
+    told = _told(dump, database)
+    assert len(told) == 5
+    assert all(before[3] == after[2] for before, after in pairwise(told))
+
+
+def test_a_changed_schedule_goes_on_from_the_last_digest(open_database, dump, plan):
+    database = open_database()
+    _go_on(database, [plan(schedules=("0 6 * * *",))], BEGIN_S + 60 * HOUR_S)
+    _go_on(database, [plan(schedules=("0 7 * * *",))], BEGIN_S + 90 * HOUR_S)
+    told = _told(dump, database)
+    assert {due[11:16] for _, due, _, _ in told} == {"06:00", "07:00"}
+    assert all(before[3] == after[2] for before, after in pairwise(told))
+
+
 def test_a_desk_without_recipients_has_digests_and_no_mail(open_database, dump, plan):
     database = open_database()
     _go_on(database, [plan(schedules=("0 * * * *",))], BEGIN_S + 3 * HOUR_S)

@@ -237,6 +237,21 @@ def test_a_refused_mail_holds_no_other_up(postman, put, inbox, states):
     assert states() == {"refused": 1, "sent": 1}
 
 
+def test_a_mail_that_fails_in_an_unforeseen_way_waits_and_holds_no_other_up(
+    database, mail_settings, clock, plan, put, states
+):
+    # A host label of more than 63 characters is no host name: the resolver's encoding raises.
+    odd = mail_settings.model_copy(update={"host": f"{'a' * 70}.example"})
+    postman = Postman(database, (plan("quay"),), odd, None, clock)
+    put("one")
+    put("two")
+    with capture_logs() as logs:
+        postman.round()
+    assert states() == {"queued": 2}
+    assert {entry["key"] for entry in logs} == {"one", "two"}
+    assert {entry["event"] for entry in logs} == {"mail_failed"}
+
+
 def test_a_mail_whose_answer_never_came_is_not_sent_again(postman, put, inbox, clock, states):
     put("one")
     inbox.answers["DATA"] = "DROP"
