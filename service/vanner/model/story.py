@@ -74,7 +74,10 @@ class Story:
         self.terms[candidate.term] = LeadingTerm(
             candidate.bits, candidate.seen, candidate.expected, joined_s
         )
+        before_bits = self.bits
         self._rank()
+        if self.bits > before_bits:
+            self.last_activity_s = now_s
 
     def _rank(self) -> None:
         ranked = sorted((term.bits for term in self.terms.values()), reverse=True)

@@ -212,12 +212,23 @@ def test_a_story_is_not_raised_by_a_threshold_that_sank_since_its_last_item():
         _candidate(ICE, 20.0, 1, 2), _candidate(PIER, 15.0, 1, 2), own_terms=own_terms, levels=high
     )
     later_s = NOW_S + 3600.0
-    # Only the evidence is counted anew; no item is.
-    stronger = [_candidate(ICE, 21.0, 1, 2)]
-    (same,) = _update(book, stronger, own_terms, arrivals=[], now_s=later_s)
-    assert (same is story, story.raised_s) == (True, None)
+    # The evidence is counted anew and is no stronger; no item is added.
+    (same,) = _update(book, [_candidate(ICE, 20.0, 1, 2)], own_terms, arrivals=[], now_s=later_s)
+    assert (same is story, story.raised_s, story.last_activity_s) == (True, None, NOW_S)
     _update(book, [], own_terms, arrivals=[3], now_s=later_s + PULSE_S)
     assert story.raised_s == later_s + PULSE_S
+
+
+def test_stronger_evidence_is_activity_and_may_raise_a_story():
+    high = Levels(join_bits=6.0, floor_bits=10.0, ceiling_bits=35.5, noted_bits=6.0)
+    own_terms = _held_by_all({ICE, PIER}, 1, 2)
+    book, (story,) = _begun(
+        _candidate(ICE, 20.0, 1, 2), _candidate(PIER, 15.0, 1, 2), own_terms=own_terms, levels=high
+    )
+    later_s = NOW_S + 3600.0
+    stronger = [_candidate(ICE, 21.0, 1, 2)]
+    _update(book, stronger, own_terms, arrivals=[], now_s=later_s, levels=high)
+    assert (story.raised_s, story.last_activity_s) == (later_s, later_s)
 
 
 def test_the_headline_is_of_the_item_with_most_of_the_storys_bits_until_it_is_raised():
