@@ -221,7 +221,8 @@ def test_a_running_daemon_takes_in_what_is_imported_and_raises_nothing_of_it(
     ended = vanner("import", "past.jsonl", "--source", "inbox")
     assert (ended.returncode, ended.stderr) == (0, "Importing: 60\n")
     assert ended.stdout == (
-        "60 items to learn from, 0 revisions, 0 known already; they are read at the next pulse.\n"
+        "60 items to learn from, 0 revisions, 0 known already; "
+        "they are read from the next pulse on, 2,000 a pulse.\n"
     )
     wait_until(lambda: ask("SELECT count(*) FROM readings") == [(60,)], daemon.log)
     assert daemon.end() == (0, "")

@@ -21,7 +21,14 @@ from vanner.cli.console import (
 )
 from vanner.cli.log import set_up_log
 from vanner.clock import iso_utc, now_s, pulse_of
-from vanner.daemon.archiving import accept_archive, archive_items, open_fresh, replay, teach
+from vanner.daemon.archiving import (
+    TAUGHT_A_PULSE,
+    accept_archive,
+    archive_items,
+    open_fresh,
+    replay,
+    teach,
+)
 from vanner.daemon.lock import is_served
 from vanner.daemon.plan import replay_plan
 from vanner.errors import SettingsError
@@ -176,11 +183,11 @@ def import_command(
             items = _without_source(archive_items(archives, faults))
             accepted = teach(database, items, source, told.service.pulse, now_s, faults, bar)
         faults.close()
-        when = "at the next pulse" if is_served(database.path) else "when the daemon starts"
+        when = "from the next pulse on" if is_served(database.path) else "when the daemon starts"
         say(
             f"{counted(accepted.new, 'item')} to learn from, "
             f"{counted(accepted.revised, 'revision')}, {accepted.known:,} known already; "
-            f"they are read {when}."
+            f"they are read {when}, {TAUGHT_A_PULSE:,} a pulse."
         )
     finally:
         database.close()

@@ -23,6 +23,7 @@ from vanner.store.source_states import register
 REPLAY, DEMO = "replay", "demo"  # databases that may be made anew without asking
 _BATCH = 1000
 BATCHES_A_PULSE = 2  # of taught items
+TAUGHT_A_PULSE = _BATCH * BATCHES_A_PULSE
 _PULSES_PER_COMMIT = 200
 _PULSES_PER_CHECKPOINT = 1_000_000  # a replay that is broken off is begun anew
 

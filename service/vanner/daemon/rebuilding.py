@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Sequence
+from dataclasses import replace
 from pathlib import Path
 
 from vanner.daemon.engine import Engine, Progress
@@ -64,23 +65,34 @@ def rebuild(
         if state is None:
             return items
         first_s = min([*starts.values(), *(span[:1] if span else ())], default=state.read_s)
-        engine = Engine(
-            new,
-            plans,
-            pulse_s,
-            purpose=state.purpose,
-            withhold_mail=True,
-            pulses_per_commit=_PULSES_PER_COMMIT,
-            pulses_per_checkpoint=_PULSES_PER_CHECKPOINT,
-        )
-        with new.write() as target:
-            begin_s = first_s // pulse_s * pulse_s
-            start_clock(target, ClockState(pulse_s, begin_s, begin_s, state.purpose))
-        engine.begin(begin_s)
-        engine.advance(state.read_s, on_pulse)
-        engine.save()
+        _derive(new, plans, replace(state, pulse_s=pulse_s), first_s, on_pulse)
         with new.write() as target:
             take_over(target, mail)
     finally:
         new.close()
     return items
+
+
+def _derive(
+    new: Database,
+    plans: Sequence[DeskPlan],
+    clock: ClockState,
+    first_s: float,
+    on_pulse: Callable[[Progress], None],
+) -> None:
+    """Read everything in a database from `first_s` to where the old one's clock stood."""
+    begin_s = first_s // clock.pulse_s * clock.pulse_s
+    with new.write() as target:
+        start_clock(target, replace(clock, closed_s=begin_s, read_s=begin_s))
+    engine = Engine(
+        new,
+        plans,
+        clock.pulse_s,
+        purpose=clock.purpose,
+        withhold_mail=True,
+        pulses_per_commit=_PULSES_PER_COMMIT,
+        pulses_per_checkpoint=_PULSES_PER_CHECKPOINT,
+    )
+    engine.begin(begin_s)
+    engine.advance(clock.read_s, on_pulse)
+    engine.save()

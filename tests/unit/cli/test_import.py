@@ -43,7 +43,7 @@ def test_an_import_tells_what_it_brought_and_when_it_is_read(
     assert (ended.status, ended.err) == (0, "Importing: 6\n")
     assert ended.out == (
         "6 items to learn from, 0 revisions, 0 known already; "
-        "they are read when the daemon starts.\n"
+        "they are read when the daemon starts, 2,000 a pulse.\n"
     )
 
 
@@ -62,7 +62,7 @@ def test_an_import_says_that_a_running_daemon_reads_it_soon(
     settings()
     with sole_daemon(tmp_path / "vanner.db"):
         ended = vanner("import", write_archive(few_lines), "--source", "inbox")
-    assert ended.out.endswith("they are read at the next pulse.\n")
+    assert ended.out.endswith("they are read from the next pulse on, 2,000 a pulse.\n")
 
 
 def test_what_is_imported_before_the_first_start_is_read_by_it(
