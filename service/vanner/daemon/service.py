@@ -33,7 +33,8 @@ log = structlog.get_logger()
 
 _AFTER_CLOSE_S = 0.02  # so that the job never runs a hair before the pulse has ended
 _RETRY_S = 5.0  # after a database that refused
-_STOP_WAIT_S = 8.0
+_STOP_WAIT_S = 7.0
+_POST_WAIT_S = 1.0
 # A turn sets its next one before it has quite ended. Were only one instance allowed, a next one
 # that is due at once (a pulse that took longer than a pulse) could be dropped, and the job with
 # it for good. Two turns of a job never work side by side all the same: see the locks.
@@ -188,4 +189,7 @@ class Service:
                 log.error("save_failed", reason=str(error))  # noqa: TRY400 - users get a sentence
             finally:
                 self._working.release()
+        # A mail that is being handed over may become known as sent, if that takes no time.
+        if self._posting.acquire(timeout=_POST_WAIT_S):
+            self._posting.release()
         log.info("service_stopped")

@@ -10,7 +10,7 @@ from __future__ import annotations
 import sqlite3
 import threading
 from collections.abc import Iterator
-from contextlib import contextmanager
+from contextlib import contextmanager, suppress
 from pathlib import Path
 from typing import Any
 
@@ -26,7 +26,9 @@ __all__ = ["Connection", "Database"]
 BUSY_TIMEOUT_S = 10.0
 
 
-def _engine(path: Path, busy_timeout_s: float, *, writable: bool) -> Engine:
+def _engine(
+    path: Path, busy_timeout_s: float, opened: set[sqlite3.Connection], *, writable: bool
+) -> Engine:
     uri = f"{path.as_uri()}?mode={'rwc' if writable else 'ro'}"
 
     def connect() -> sqlite3.Connection:
@@ -40,6 +42,7 @@ def _engine(path: Path, busy_timeout_s: float, *, writable: bool) -> Engine:
     engine = create_engine("sqlite://", creator=connect, poolclass=QueuePool)
 
     def on_connect(connection: Any, _record: Any) -> None:  # noqa: ANN401 - the driver's types
+        opened.add(connection)
         connection.execute("PRAGMA foreign_keys = ON")
         if writable:
             if connection.execute("PRAGMA page_count").fetchone() == (0,):
@@ -53,7 +56,11 @@ def _engine(path: Path, busy_timeout_s: float, *, writable: bool) -> Engine:
     def on_begin(connection: Connection) -> None:
         connection.exec_driver_sql("BEGIN IMMEDIATE" if writable else "BEGIN")
 
+    def on_close(connection: Any, _record: Any) -> None:  # noqa: ANN401 - the driver's types
+        opened.discard(connection)
+
     event.listen(engine, "connect", on_connect)
+    event.listen(engine, "close", on_close)
     event.listen(engine, "begin", on_begin)
     return engine
 
@@ -64,8 +71,9 @@ class Database:
     def __init__(self, path: Path, busy_timeout_s: float = BUSY_TIMEOUT_S) -> None:
         self.path = path
         self.busy_timeout_s = busy_timeout_s
-        self._writer = _engine(path, busy_timeout_s, writable=True)
-        self._reader = _engine(path, busy_timeout_s, writable=False)
+        self._opened: set[sqlite3.Connection] = set()
+        self._writer = _engine(path, busy_timeout_s, self._opened, writable=True)
+        self._reader = _engine(path, busy_timeout_s, self._opened, writable=False)
         self._lock = threading.RLock()
 
     @classmethod
@@ -142,6 +150,10 @@ class Database:
             yield connection
 
     def close(self) -> None:
-        """Let go of all connections. May be called twice."""
+        """Let go of all connections, in whatever thread they are. May be called twice."""
         self._reader.dispose()
         self._writer.dispose()
+        # A connection that a thread had taken out of the pool would be left open by that.
+        while self._opened:
+            with suppress(sqlite3.Error):
+                self._opened.pop().close()
