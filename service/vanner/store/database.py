@@ -10,7 +10,7 @@ from __future__ import annotations
 import sqlite3
 import threading
 from collections.abc import Iterator
-from contextlib import contextmanager, suppress
+from contextlib import contextmanager
 from pathlib import Path
 from typing import Any
 
@@ -24,11 +24,10 @@ from vanner.store.migrate import current_revision, is_behind, upgrade
 __all__ = ["Connection", "Database"]
 
 BUSY_TIMEOUT_S = 10.0
+CLOSING_WAIT_S = 5.0
 
 
-def _engine(
-    path: Path, busy_timeout_s: float, opened: set[sqlite3.Connection], *, writable: bool
-) -> Engine:
+def _engine(path: Path, busy_timeout_s: float, *, writable: bool) -> Engine:
     uri = f"{path.as_uri()}?mode={'rwc' if writable else 'ro'}"
 
     def connect() -> sqlite3.Connection:
@@ -42,7 +41,6 @@ def _engine(
     engine = create_engine("sqlite://", creator=connect, poolclass=QueuePool)
 
     def on_connect(connection: Any, _record: Any) -> None:  # noqa: ANN401 - the driver's types
-        opened.add(connection)
         connection.execute("PRAGMA foreign_keys = ON")
         if writable:
             if connection.execute("PRAGMA page_count").fetchone() == (0,):
@@ -56,11 +54,7 @@ def _engine(
     def on_begin(connection: Connection) -> None:
         connection.exec_driver_sql("BEGIN IMMEDIATE" if writable else "BEGIN")
 
-    def on_close(connection: Any, _record: Any) -> None:  # noqa: ANN401 - the driver's types
-        opened.discard(connection)
-
     event.listen(engine, "connect", on_connect)
-    event.listen(engine, "close", on_close)
     event.listen(engine, "begin", on_begin)
     return engine
 
@@ -71,10 +65,12 @@ class Database:
     def __init__(self, path: Path, busy_timeout_s: float = BUSY_TIMEOUT_S) -> None:
         self.path = path
         self.busy_timeout_s = busy_timeout_s
-        self._opened: set[sqlite3.Connection] = set()
-        self._writer = _engine(path, busy_timeout_s, self._opened, writable=True)
-        self._reader = _engine(path, busy_timeout_s, self._opened, writable=False)
+        self._writer = _engine(path, busy_timeout_s, writable=True)
+        self._reader = _engine(path, busy_timeout_s, writable=False)
         self._lock = threading.RLock()
+        self._idle = threading.Condition()
+        self._busy = 0
+        self._closed = False
 
     @classmethod
     def open(
@@ -136,7 +132,12 @@ class Database:
         Raises:
             DatabaseError: The database refused; nothing of the block was kept.
         """
-        with self._lock, database_errors(self.path), self._writer.begin() as connection:
+        with (
+            self._in_use(),
+            self._lock,
+            database_errors(self.path),
+            self._writer.begin() as connection,
+        ):
             yield connection
 
     @contextmanager
@@ -146,14 +147,30 @@ class Database:
         Raises:
             DatabaseError: The database refused.
         """
-        with database_errors(self.path), self._reader.begin() as connection:
+        with self._in_use(), database_errors(self.path), self._reader.begin() as connection:
             yield connection
 
+    @contextmanager
+    def _in_use(self) -> Iterator[None]:
+        with self._idle:
+            if self._closed:
+                raise DatabaseError(f"The database {self.path} has been closed; start again.")
+            self._busy += 1
+        try:
+            yield
+        finally:
+            with self._idle:
+                self._busy -= 1
+                self._idle.notify_all()
+
     def close(self) -> None:
-        """Let go of all connections, in whatever thread they are. May be called twice."""
+        """Let go of all connections, once other threads have ended theirs. May be called twice.
+
+        Transactions that begin afterwards are refused. A connection must not be closed under
+        another thread's hands, so one that does not end within a few seconds is left to it.
+        """
+        with self._idle:
+            self._closed = True
+            self._idle.wait_for(lambda: self._busy == 0, timeout=CLOSING_WAIT_S)
         self._reader.dispose()
         self._writer.dispose()
-        # A connection that a thread had taken out of the pool would be left open by that.
-        while self._opened:
-            with suppress(sqlite3.Error):
-                self._opened.pop().close()
