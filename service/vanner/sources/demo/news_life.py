@@ -68,7 +68,7 @@ Exhibition at {venue} ::
 Tickets at the door or from {firm}.
 12> The interval is long enough for soup.
 1> {person3} painted the scenery on sailcloth given by {firm2}.
-A lecture on {hobby} follows on {weekday2}.
+An evening on {hobby} follows on {weekday2}.
 12> The programme also has songs from {village} and a march.
 Ushers ask that umbrellas be left with the attendant.
 3> The curator calls it the fullest collection between here and {town}.

@@ -59,7 +59,7 @@ THINGS: dict[str, tuple[str, ...]] = {
     """),
     "trade": listed("""
         plumber, welder, baker, postwoman, retired tugmaster, teacher, dentist, crane driver,
-        bookseller, netmaker, bus driver, nurse, locksmith, chemist, roofer, seed merchant,
+        bookseller, netmaker, bus driver, nurse, locksmith, chemist, roofer, grain merchant,
         hairdresser, joiner, surveyor, optician, cook, gardener
     """),
     "offence": listed("""
