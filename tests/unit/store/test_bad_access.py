@@ -6,6 +6,7 @@ import sqlite3
 import subprocess
 import sys
 import tempfile
+import threading
 from contextlib import closing
 from dataclasses import dataclass
 from pathlib import Path
@@ -211,8 +212,40 @@ def test_a_new_database_in_a_folder_that_may_not_be_written_is_refused(came):
 
 
 def test_a_database_that_vanishes_is_told_and_not_made_anew(database):
+    without_connections = Database(database.path)
     database.close()
     database.path.unlink()
-    with pytest.raises(DatabaseError, match="cannot be opened"), database.read():
+    with pytest.raises(DatabaseError, match="cannot be opened"), without_connections.read():
         pass
     assert not database.path.exists()
+
+
+def test_a_database_that_was_closed_refuses_to_go_on(database):
+    database.close()
+    for use in (database.read, database.write):
+        with pytest.raises(DatabaseError, match="has been closed"), use():
+            pass
+
+
+def test_closing_waits_for_what_another_thread_has_begun(database):
+    begun, go_on = threading.Event(), threading.Event()
+
+    def write():
+        with database.write() as connection:
+            begun.set()
+            go_on.wait()
+            connection.exec_driver_sql(ADD.format("mast"))
+
+    writer = threading.Thread(target=write)
+    writer.start()
+    begun.wait()
+    closer = threading.Thread(target=database.close)
+    closer.start()
+    closer.join(timeout=0.2)
+    assert closer.is_alive()
+    go_on.set()
+    writer.join()
+    closer.join()
+    with closing(sqlite3.connect(database.path)) as reader:
+        kept = reader.execute("SELECT source FROM source_state WHERE source = 'mast'").fetchall()
+    assert kept == [("mast",)]
