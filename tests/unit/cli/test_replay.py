@@ -5,6 +5,7 @@ import os
 import re
 import shlex
 import threading
+from contextlib import closing
 
 import pytest
 
@@ -66,7 +67,10 @@ def test_an_earlier_replay_stays_where_the_archive_is_missing(
 def test_the_database_of_a_service_is_not_replaced(
     vanner, write_archive, few_lines, ask, town_database
 ):
-    with Database.open(town_database).write() as connection:
+    with (
+        closing(Database.open(town_database)) as database,
+        database.write() as connection,
+    ):
         connection.exec_driver_sql("UPDATE clock SET purpose = 'service'")
     ended = vanner("replay", write_archive(few_lines), "-d", town_database)
     assert (ended.status, ended.out) == (3, "")
