@@ -149,7 +149,7 @@ def test_an_archive_may_come_through_a_pipe(vanner, few_lines, ask, tmp_path):
 def test_the_budget_and_the_time_zone_reach_the_desk(vanner, write_archive, few_lines, tmp_path):
     archive = write_archive(few_lines)
     vanner("replay", archive, "-d", "t.db", "-n", "2.5", "--timezone", "Europe/Vienna")
-    with Database.open(tmp_path / "t.db").read() as connection:
+    with closing(Database.open(tmp_path / "t.db")) as database, database.read() as connection:
         told = connection.exec_driver_sql("SELECT parameters FROM desk_state").scalar_one()
     parameters = json.loads(told)["parameters"]
     assert (parameters["alerts_per_day"], parameters["zone"]) == (2.5, "Europe/Vienna")
