@@ -17,7 +17,7 @@ from vanner.store.pulses import pulses_between
 from vanner.terms import count_terms
 
 # Taught items of one pulse are read so many at a time, so that a long archive taught at once
-# is read against what its own beginning taught, and stays in memory.
+# is read against what its own beginning taught.
 TAUGHT_AT_ONCE = 500
 
 

@@ -72,7 +72,6 @@ class Service:
         self._postman = postman
         self._clock = clock
         self._on_pulse = on_pulse
-        self._sources = [source for source, _, _ in sources]
         self._kinds = [(source.name, kind) for source, kind, _ in sources]
         self._pollers = [
             Poller(database, source, kind, every_s, random.Random(rng.random()), clock)  # noqa: S311 - jitter, not secrecy

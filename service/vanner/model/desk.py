@@ -1,7 +1,7 @@
 """A desk's model: one pulse in, readings and stories out.
 
-The state after a pulse is a function of the state before it, the pulse's items and the zone;
-how the pulse was cut into batches does not matter.
+The state after a pulse is a function of the state before it, the pulse's items and the zone.
+Items that one step reads together do not change each other's readings.
 """
 
 from __future__ import annotations
